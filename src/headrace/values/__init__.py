@@ -1,0 +1,1 @@
+"""Frozen types that pass between the layers. This package imports nothing of Headrace."""

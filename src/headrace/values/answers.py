@@ -1,0 +1,225 @@
+"""What the phases answer. Frozen values; the main ones have the keys of the JSON output (see README).
+
+Rates are mmol/gDW/h, carbon is mmol C/gDW/h, skeletons are mmol/gDW/h, per-mole figures are exact fractions.
+"""
+
+from __future__ import annotations
+
+from fractions import Fraction
+
+from msgspec import Struct
+
+from headrace.values.case import Finding
+
+
+class PoolTerm(Struct, frozen=True):
+    """One pool of a route vector, mole per mole of outlet (all >= 0 but net = taken - returned)."""
+
+    compound: str
+    place: str
+    taken: Fraction = Fraction(0)
+    returned: Fraction = Fraction(0)
+    shuttled: Fraction = Fraction(0)
+
+
+class Draw(Struct, frozen=True):
+    """What one mole of an outlet takes. scale: names of the scenario scalars that multiply it ("growth" or "outlet.0").
+
+    needs: net need per mole (positive = used, negative = made) of atp, nadph, nadh, quinol, co2, ammonium, oxygen, one-carbon.
+    skeletons: net skeletons per mole. steps: reaction slug -> mole per mole of outlet. routes: slugs used.
+    """
+
+    outlet: str
+    label: str
+    scale: tuple[str, ...]
+    pools: tuple[PoolTerm, ...]
+    needs: dict[str, Fraction]
+    skeletons: Fraction
+    steps: dict[str, Fraction]
+    routes: tuple[str, ...]
+    origin: str
+    recalled: bool = False
+    readings: tuple[str, ...] = ()
+
+
+class DrainRow(Struct, frozen=True):
+    """A draw times its rate, one pool. Rates in mmol/gDW/h; skeletons = net times the pool's content."""
+
+    outlet: str
+    pool: str
+    compound: str
+    compartment: str
+    taken: float
+    returned: float
+    shuttled: float
+    net: float
+    carbon_net: float
+    skeletons: float
+
+
+class LedgerRow(Struct, frozen=True):
+    """side: left | right. kind: drained | released | removed | refilled | supplied | carried-in | carried-out."""
+
+    side: str
+    kind: str
+    what: str
+    compartment: str
+    skeletons: float
+
+
+class CompartmentLedger(Struct, frozen=True):
+    """The same law in one compartment, with what carriers bring in and out. residual should vanish."""
+
+    compartment: str
+    drained: float
+    released: float
+    removed: float
+    carried_out: float
+    refilled: float
+    supplied: float
+    carried_in: float
+    residual: float
+
+
+class Ledger(Struct, frozen=True):
+    """net_drain + released + removed = refilled + supplied, in skeletons (mmol/gDW/h)."""
+
+    net_drain: float
+    released: float
+    removed: float
+    refilled: float
+    supplied: float
+    residual: float
+    rows: tuple[LedgerRow, ...]
+    compartments: tuple[CompartmentLedger, ...]
+
+
+class RefillRow(Struct, frozen=True):
+    """One refill of the host. None = not known or not defined (never a guess)."""
+
+    refill: str
+    label: str
+    group: str
+    ec: tuple[str, ...]
+    compartment: str
+    steps: tuple[str, ...]
+    skeletons_per_turn: float
+    least: float | None
+    nominal: float | None
+    most: float | None
+    split: str
+    capacity: float | None
+    cover: float | None
+    necessary: bool
+    open: bool
+    reason: str
+    atp: float
+    carbon_fixed: float
+    genes: str = ""
+    cofactors: tuple[str, ...] = ()
+    reading: str = ""
+    source: str = ""
+
+
+class GroupRow(Struct, frozen=True):
+    """A group of refills that can stand in for one another: one requirement, one capacity."""
+
+    group: str
+    label: str
+    members: tuple[str, ...]
+    least: float | None
+    nominal: float | None
+    most: float | None
+    capacity: float | None
+    cover: float | None
+    necessary: bool
+    split: str
+
+
+class FeedRow(Struct, frozen=True):
+    substrate: str
+    uptake: float
+    carbon: float
+
+
+class Crossing(Struct, frozen=True):
+    """Net rate across the cell's boundary; into the cell positive."""
+
+    compound: str
+    rate: float
+
+
+class Shortage(Struct, frozen=True):
+    pool: str
+    missing: float
+
+
+class Repair(Struct, frozen=True):
+    """A single change that opens an infeasible case; aim = least feed carbon of the repaired case (None if not defined)."""
+
+    change: str
+    kind: str
+    aim: float | None
+
+
+class RateRow(Struct, frozen=True):
+    reaction: str
+    rate: float
+    least: float | None = None
+    most: float | None = None
+
+
+class RefillAnswer(Struct, frozen=True):
+    """What `headrace refills` answers. Fields below `aim` that need a solution are empty when infeasible."""
+
+    answer: str
+    aim: str
+    drains: tuple[DrainRow, ...]
+    ledger: Ledger | None
+    refills: tuple[RefillRow, ...]
+    groups: tuple[GroupRow, ...]
+    feed: tuple[FeedRow, ...]
+    crossings: tuple[Crossing, ...]
+    shortage: tuple[Shortage, ...]
+    repairs: tuple[Repair, ...]
+    closure: dict[str, float]
+    removals: tuple[RateRow, ...] = ()
+    rates: tuple[RateRow, ...] = ()
+    energy: dict[str, float] = {}
+    surplus_carbon: float | None = None
+    cycling_cap: float | None = None
+    design_cover: float | None = None
+    findings: tuple[Finding, ...] = ()
+
+
+class CeilingAnswer(Struct, frozen=True):
+    """Largest yields of one outlet, side by side. None where not defined (then a finding says why)."""
+
+    outlet: str
+    substrate: str
+    growth: float
+    mol_per_mol: float | None
+    open_mol_per_mol: float | None
+    g_per_g: float | None
+    cmol_per_cmol: float | None
+    electron_ceiling_mol_per_mol: float | None
+    carbon_ceiling_mol_per_mol: float | None
+    carbon_ceiling_with_co2_mol_per_mol: float | None
+    co2_rule: str
+    binding: tuple[str, ...]
+    answer: str
+    findings: tuple[Finding, ...] = ()
+
+
+class GrowsAnswer(Struct, frozen=True):
+    """Whether the strain grows on the medium. rate: largest growth, 1/h, at the stated feed."""
+
+    grows: bool
+    rate: float
+    because: tuple[str, ...]
+    missing: tuple[str, ...]
+    flips_with_basal: bool
+    rules: tuple[str, ...] = ()
+    fitted: bool = False
+    repairs: tuple[Repair, ...] = ()
+    findings: tuple[Finding, ...] = ()
