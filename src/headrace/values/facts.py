@@ -254,7 +254,9 @@ class Enzyme(Struct, frozen=True):
 class Facts(Struct, frozen=True):
     """All facts of one build, by slug. version: hash of the fact files' relative paths and bytes.
 
-    contents: skeletons per mole of each compound (derived). contents_ties: where the sparsest account differs.
+    contents: skeletons per mole of each compound (derived). roles: what the core asks for without knowing its name
+    (graph_data/ontology/roles.ttl), role slug -> entity slugs: energy-release (reaction), oxygen, carbon-dioxide,
+    inorganic-carbon, water, proton, motive-proton, ammonium. electron_pairs: reduced carrier -> oxidised carrier.
     """
 
     version: str
@@ -268,3 +270,5 @@ class Facts(Struct, frozen=True):
     circumstances: dict[str, str]
     units: dict[str, str]
     contents: dict[str, Fraction] = {}
+    roles: dict[str, tuple[str, ...]] = {}
+    electron_pairs: dict[str, str] = {}
