@@ -9,7 +9,7 @@ from fractions import Fraction
 
 from msgspec import Struct
 
-from headrace.values.case import Finding
+from headrace.values.case import Case, Finding
 
 
 class PoolTerm(Struct, frozen=True):
@@ -223,3 +223,27 @@ class GrowsAnswer(Struct, frozen=True):
     fitted: bool = False
     repairs: tuple[Repair, ...] = ()
     findings: tuple[Finding, ...] = ()
+
+
+class Result(Struct, frozen=True):
+    """One question answered. kind: drains | refills | ceiling | grows; answer is None for drains.
+
+    facts_version: hash of all facts used. plugins: names of the plugins that took part.
+    """
+
+    kind: str
+    case: Case
+    facts_version: str
+    draws: tuple[Draw, ...]
+    drains: tuple[DrainRow, ...]
+    answer: RefillAnswer | CeilingAnswer | GrowsAnswer | None
+    findings: tuple[Finding, ...] = ()
+    plugins: tuple[str, ...] = ()
+
+
+class Document(Struct, frozen=True):
+    """A file that a report proposes; the core writes it. name: a plain file name; media_type: such as "text/markdown"."""
+
+    name: str
+    media_type: str
+    text: str
