@@ -10,6 +10,7 @@ from fractions import Fraction
 from msgspec import Struct
 
 from headrace.values.case import Case, Finding
+from headrace.values.facts import Facts
 
 
 class PoolTerm(Struct, frozen=True):
@@ -228,17 +229,21 @@ class GrowsAnswer(Struct, frozen=True):
 class Result(Struct, frozen=True):
     """One question answered. kind: drains | refills | ceiling | grows; answer is None for drains.
 
-    facts_version: hash of all facts used. plugins: names of the plugins that took part.
+    facts_version: hash of all facts used. plugins: names of the plugins that took part. facts: what the answer was
+    made from (labels, sources and readings for whoever shows it). related: answers to other questions on the same
+    scenario that a report shows beside this one (the ceiling of each outlet).
     """
 
     kind: str
     case: Case
     facts_version: str
+    facts: Facts
     draws: tuple[Draw, ...]
     drains: tuple[DrainRow, ...]
     answer: RefillAnswer | CeilingAnswer | GrowsAnswer | None
     findings: tuple[Finding, ...] = ()
     plugins: tuple[str, ...] = ()
+    related: tuple[Result, ...] = ()
 
 
 class Document(Struct, frozen=True):
