@@ -26,7 +26,8 @@ KIND_BASE = ID + "kind/"
 UNIT_BASE = ID + "unit/"
 CIRCUMSTANCE_BASE = ID + "circumstance/"
 HOST_BASE = ID + "host/"
-RULE_BASE = ID + "rule/"
+ROLE_BASE = ID + "role/"
+EXCEPTION_BASE = ID + "exception/"
 DERIVED_GRAPH = ID + "graph/derived"
 FACTS_GRAPH = ID + "graph/facts"
 
@@ -39,6 +40,7 @@ PREFIXES: dict[str, str] = {
     "dcterms": DCTERMS,
     "e": ENZYME_BASE,
     "ec": UNIPROT_ENZYME,
+    "except": EXCEPTION_BASE,
     "h": HOST_BASE,
     "hr": HR,
     "k": KIND_BASE,
@@ -51,8 +53,8 @@ PREFIXES: dict[str, str] = {
     "rdf": RDF,
     "rdfs": RDFS,
     "rh": RHEA,
+    "role": ROLE_BASE,
     "rt": ROUTE_BASE,
-    "rule": RULE_BASE,
     "s": SOURCE_BASE,
     "sd": "http://www.w3.org/ns/sparql-service-description#",
     "sh": "http://www.w3.org/ns/shacl#",
@@ -175,8 +177,15 @@ FORM = HR + "form"
 DEFAULT = HR + "default"
 USES = HR + "uses"
 
+# What the core asks for without knowing its name
+ROLE_CLASS = HR + "Role"
+MEMBER = HR + "member"
+PAIR = HR + "pair"
+REDUCED = HR + "reduced"
+OXIDISED = HR + "oxidised"
+
 # Properties of exceptions to the checks
-RULE = HR + "rule"
+EXCEPTION_RULE = HR + "rule"
 EXCUSES = HR + "excuses"
 
 # Derived properties (never in hand-written files)

@@ -91,8 +91,6 @@ class _Writer:
             return self.iri(value.value)
         if isinstance(value, Literal):
             return self.literal(value)
-        if not isinstance(value, BlankNode):
-            raise ValueError(f"a quoted triple can't be written: {value}")
         self.written.add(value)
         items = self.items(value)
         if items is not None:
@@ -146,6 +144,8 @@ def _distinct(quads: Iterable[Quad | Triple]) -> Iterable[tuple[NamedNode | Blan
     for quad in quads:
         if isinstance(quad, Quad) and not isinstance(quad.graph_name, DefaultGraph):
             raise ValueError(f"Turtle has no named graphs: {quad.graph_name}")
+        if isinstance(quad.subject, Triple) or isinstance(quad.object, Triple):
+            raise ValueError(f"a statement about a statement can't be written: {quad}")
         triple = (quad.subject, quad.predicate, quad.object)
         if triple not in seen:
             seen.add(triple)
