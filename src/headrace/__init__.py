@@ -6,6 +6,7 @@ answers, answers become text. Each layer may import the layers above it in this 
     errors, names, units,   leaves: the error tree, the lookup of names, units at the edges, settings, where files
     settings, paths         are; they import only leaves
     values                  frozen types that pass between the layers; imports nothing of Headrace
+    pages                   results as pages of plain tables, and pages as Markdown, CSV or text; imports only values
     solve                   arrays in, arrays out: the only importer of the LP solver and of exact algebra
     graph                   fact files in, `Facts` out: reading, building, caching, checking, exporting RDF
     case                    a scenario file in, a `Case` out: keys, units, names, expression levels, changes
