@@ -30,7 +30,7 @@ from headrace.values.facts import Outlet
 
 if TYPE_CHECKING:
     from headrace.hooks.bench import Bench
-    from headrace.network.model import Network
+    from headrace.network.build import Network
     from headrace.network.routes import RouteBook
 
 

@@ -10,7 +10,7 @@ import pluggy
 
 if TYPE_CHECKING:
     from headrace.hooks.bench import Bench
-    from headrace.network.model import Network
+    from headrace.network.build import Network
     from headrace.network.routes import RouteBook
     from headrace.values.answers import Document, DrainRow, Draw, RefillAnswer, Result
     from headrace.values.case import Case, Demand, Finding

@@ -171,7 +171,11 @@ class RateRow(Struct, frozen=True):
 
 
 class RefillAnswer(Struct, frozen=True):
-    """What `headrace refills` answers. Fields below `aim` that need a solution are empty when infeasible."""
+    """What `headrace refills` answers. Fields below `aim` that need a solution are empty when infeasible.
+
+    drawn: what outlets, biomass and maintenance draw, per compound (negative), so that crossings + drawn close.
+    scalars: the rate of each demand ("growth" 1/h, "outlet.0" mmol/gDW/h). energy: mmol ATP/gDW/h by use.
+    """
 
     answer: str
     aim: str
@@ -184,13 +188,30 @@ class RefillAnswer(Struct, frozen=True):
     shortage: tuple[Shortage, ...]
     repairs: tuple[Repair, ...]
     closure: dict[str, float]
+    drawn: tuple[Crossing, ...] = ()
     removals: tuple[RateRow, ...] = ()
     rates: tuple[RateRow, ...] = ()
     energy: dict[str, float] = {}
     surplus_carbon: float | None = None
     cycling_cap: float | None = None
     design_cover: float | None = None
+    scalars: dict[str, float] = {}
     findings: tuple[Finding, ...] = ()
+
+
+class Answer(Struct, frozen=True):
+    """One solve of a case. status: optimal | infeasible | unbounded | unknown; the rest exists when optimal.
+
+    carbon: feed carbon entering (mmol C/gDW/h). rates: net forward rate per row (mmol/gDW/h). enter, leave: across the
+    medium's edge, per compound.
+    """
+
+    status: str
+    aim: str
+    carbon: float | None = None
+    rates: dict[str, float] = {}
+    enter: dict[str, float] = {}
+    leave: dict[str, float] = {}
 
 
 class CeilingAnswer(Struct, frozen=True):

@@ -87,13 +87,14 @@ class Finding(Struct, frozen=True):
 class Scenario(Struct, frozen=True):
     """A scenario after its keys and units are checked, before names meet the facts. Slugs are resolved later.
 
-    raw: the user's document as plain data. places: key path -> line.
+    raw: the user's document as plain data. places: key path -> line. text: the document as written ("" from Python).
     """
 
     title: str
     path: str
     raw: dict[str, Any]
     places: dict[str, int] = {}
+    text: str = ""
 
 
 class Case(Struct, frozen=True):

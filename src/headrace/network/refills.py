@@ -1,0 +1,151 @@
+"""Which refills a case has: open ones with their groups and steps, closed ones with the reason they are closed.
+
+A refill is a reaction outside all routes that makes skeletons in the direction it runs (see `skeletons`); nothing is
+tagged. Refills that fix inorganic carbon in one compartment stand in for one another and form a group; any other
+refill shares a group only with rows of the same reaction in the same compartment.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator
+from dataclasses import dataclass
+
+from headrace.network.build import Network, terms_of
+from headrace.network.skeletons import effect, on_route, turnover
+from headrace.values.facts import Facts, HostReaction, Isozyme
+
+
+@dataclass(frozen=True)
+class Refill:
+    """A refill of a case. column: its column if open. turns are skeletons per unit of rate; reason if closed."""
+
+    row: str
+    reaction: str
+    sign: int
+    compartment: str
+    skeletons: float
+    fixed: float
+    column: int | None
+    kind: str
+    reason: str
+
+    @property
+    def slug(self) -> str:
+        """The row's slug, marked when it refills running backwards."""
+        return self.row if self.sign > 0 else f"{self.row}-in-reverse"
+
+    @property
+    def group(self) -> str:
+        """Which refills it can stand in for."""
+        return f"carboxylation-{self.compartment}" if self.fixed > 0 else f"{self.reaction}-{self.compartment}"
+
+
+def inorganic_fixed(facts: Facts, reaction: str, sign: int) -> float:
+    """Inorganic carbon that a turn in direction `sign` takes up (mol; negative = gives off)."""
+    carbon = set(facts.roles["inorganic-carbon"])
+    return -sign * sum(float(t.count) for t in facts.reactions[reaction].terms if t.compound in carbon)
+
+
+def energy_used(facts: Facts, reaction: str, sign: int) -> float:
+    """Energy-carrier bonds spent directly by a turn in direction `sign` (mol ATP; negative = made)."""
+    release = facts.reactions[facts.roles["energy-release"][0]]
+    charged = {t.compound for t in release.terms if t.count < 0 and facts.compounds[t.compound].carrier}
+    return -sign * sum(float(t.count) for t in facts.reactions[reaction].terms if t.compound in charged)
+
+
+def open_refills(net: Network) -> tuple[Refill, ...]:
+    """All refills that may run in this case."""
+    routes, found = on_route(net.facts), []
+    for j, column in enumerate(net.columns):
+        if column.kind != "row":
+            continue
+        row = net.case.rows[column.name]
+        what = effect(net, j)
+        if row.reaction in routes or what.made <= 1e-9:
+            continue
+        found.append(Refill(row.slug, row.reaction, column.sign, _where(row), what.made,
+                            inorganic_fixed(net.facts, row.reaction, column.sign), j,
+                            net.case.levels[row.slug].kind, net.case.levels[row.slug].reason))
+    return tuple(found)
+
+
+def closed_refills(net: Network) -> tuple[Refill, ...]:
+    """Refills that exist in the host or the graph but can't run here, each with its reason."""
+    facts, case, routes, found = net.facts, net.case, on_route(net.facts), []
+    for slug, row in sorted(case.rows.items()):
+        made = turnover(facts, row.reaction)
+        if row.reaction in routes or abs(made) < 1e-9 or facts.reactions[row.reaction].transport:
+            continue
+        signs = {"forward": (1,), "reverse": (-1,), "both": (1, -1)}[row.direction]
+        level = case.levels[slug]
+        for sign in (s for s in (1, -1) if s * made > 0):
+            fixed = inorganic_fixed(facts, row.reaction, sign)
+            if level.level == "off" and sign in signs:
+                found.append(Refill(slug, row.reaction, sign, _where(row), sign * made, fixed, None, level.kind, level.reason))
+            elif sign not in signs and fixed > 0:
+                reason = "in this host it runs only in the direction that unmakes skeletons"
+                found.append(Refill(slug, row.reaction, sign, _where(row), sign * made, fixed, None, "direction", reason))
+    have = {row.reaction for row in case.rows.values()}
+    absent = {a.reaction: a.reason for a in net.host.absences}
+    cytosol = next(c.slug for c in net.host.compartments if c.role == "cytosol")
+    for slug, reaction in sorted(facts.reactions.items()):
+        if slug not in have and slug not in routes and not reaction.transport and turnover(facts, slug) > 1e-9:
+            reason = absent.get(slug, "the host's facts do not list it")
+            found.append(Refill(slug, slug, 1, cytosol, turnover(facts, slug), inorganic_fixed(facts, slug, 1), None,
+                                "absent", f"absent: {reason}"))
+    return tuple(found)
+
+
+def _where(row: HostReaction) -> str:
+    return row.place or row.inner
+
+
+def steps(net: Network, refill: Refill, rates: Iterable[float] | None = None) -> tuple[str, ...]:
+    """The zero-content steps whose flux a refill forces, nearest first (isocitrate lyase for malate synthase).
+
+    Walks back from each taken compound that has no content, is no boundary pool and no coenzyme, as long as one
+    reaction alone makes it (of several, the one that runs).
+    """
+    chain: list[str] = []
+    row = net.case.rows.get(refill.row)
+    if row is None:
+        return ()
+    wanted = [pool for pool, count in terms_of(net.facts, net.host, row) if count * refill.sign < 0]
+    seen: set[tuple[str, str]] = set()
+    x = list(rates) if rates is not None else None
+    while wanted and len(chain) < 8:
+        pool = wanted.pop(0)
+        if pool in seen or not _intermediate(net, pool):
+            continue
+        seen.add(pool)
+        makers = [j for j in _makers(net, pool) if net.columns[j].name != refill.row]
+        if x is not None and len(makers) > 1:
+            makers = [j for j in makers if x[j] > 1e-9] or makers
+        if len({net.columns[j].name for j in makers}) != 1:
+            continue
+        maker = net.case.rows[net.columns[makers[0]].name]
+        if maker.slug not in chain:
+            chain.append(maker.slug)
+            sign = net.columns[makers[0]].sign
+            wanted += [p for p, c in terms_of(net.facts, net.host, maker) if c * sign < 0]
+    return tuple(chain)
+
+
+def _intermediate(net: Network, pool: tuple[str, str]) -> bool:
+    compound = net.facts.compounds[pool[0]]
+    roles = {name for members in net.facts.roles.values() for name in members}
+    plain = compound.anchor or compound.carrier or compound.precursor or compound.slug in roles
+    return not plain and compound.slug not in net.host.nutrients and net.facts.contents.get(compound.slug, 0) == 0 \
+        and compound.formula.get("C", 0) > 0
+
+
+def _makers(net: Network, pool: tuple[str, str]) -> Iterator[int]:
+    number = net.index.get(pool)
+    for j, column in enumerate(net.columns):
+        if number is not None and column.kind == "row" and net.entries[j].get(number, 0.0) > 0:
+            yield j
+
+
+def genes_text(isozymes: tuple[Isozyme, ...]) -> str:
+    """Gene logic in words: "sdhA with sdhB; or frdA"."""
+    return "; or ".join(" with ".join(i.genes) for i in isozymes)

@@ -1,0 +1,123 @@
+"""The phases in order, on one page: facts, case, network, drains, refills, checks, result."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from pathlib import Path
+from typing import Any
+
+import msgspec
+
+from headrace import case as cases
+from headrace import graph
+from headrace.hooks.bench import Bench
+from headrace.hooks.manager import Manager
+from headrace.network.build import build
+from headrace.network.ceiling import ceiling as find_ceiling
+from headrace.network.grows import grows as find_growth
+from headrace.network.requirement import drain_rows
+from headrace.network.routes import RouteBook
+from headrace.values.answers import RefillAnswer, Result
+from headrace.values.case import Case, Scenario
+from headrace.values.changes import Change
+from headrace.values.facts import Facts
+
+Question = str | Path | Scenario | dict[str, Any]
+Progress = Callable[[str], None]
+
+
+class Desk:
+    """Facts and plugins, loaded once; answers any number of scenarios."""
+
+    def __init__(self, *, cache: bool = True, strangers: bool = True) -> None:
+        self.plugins = Manager.load(strangers=strangers)
+        self.facts: Facts = graph.load(extra=self.plugins.fact_folders(), cache=cache)
+        self.plugins.check_families(self.facts.outlets.values())
+
+    def scenario(self, question: Question) -> Scenario:
+        """A scenario from a path, TOML or JSON text, plain data, or as it is."""
+        if isinstance(question, Scenario):
+            return question
+        return cases.from_dict(question) if isinstance(question, dict) else cases.read(question)
+
+    def case(self, question: Question, *, opened: bool = False, changes: Sequence[Change] = ()) -> Case:
+        """The scenario resolved against the facts. Raises InputError for what the facts do not know."""
+        return self.plugins.validated(cases.resolve(self.scenario(question), self.facts, opened=opened, changes=changes))
+
+    def drains(self, question: Question) -> Result:
+        """What each outlet and growth take, per pool and in skeletons."""
+        case = self.case(question)
+        draws = self.plugins.drains(case, _outlets(case), RouteBook(self.facts, case))
+        rows = drain_rows(self.facts, draws, _scalars(case))
+        findings = self.plugins.checks(case, draws, (), rows)
+        return self._result("drains", case, draws, rows, None, case.findings + findings)
+
+    def refills(self, question: Question, progress: Progress = lambda words: None) -> Result:
+        """The ledger, the requirement of each refill, and why closed ones are closed."""
+        scenario = self.scenario(question)
+        case = self.case(scenario)
+        progress("drains")
+        draws = self.plugins.drains(case, _outlets(case), RouteBook(self.facts, case))
+        progress("refills")
+        network = build(self.facts, case)
+        bench = Bench(self.facts, lambda changes: self.case(scenario, changes=changes))
+        merged = self.plugins.refills(case, network, draws, bench)
+        progress("checks")
+        answer: RefillAnswer = merged.answer
+        rows = answer.drains or drain_rows(self.facts, draws, answer.scalars or _scalars(case))
+        answers = (answer, *(other for _, other in merged.others))
+        said = self.plugins.checks(case, draws, answers, rows)
+        findings = case.findings + answer.findings + merged.findings + said
+        return self._result("refills", case, draws, rows, msgspec.structs.replace(answer, findings=findings), findings)
+
+    def ceiling(self, question: Question, outlet: str = "", growth: float = 0.0) -> Result:
+        """Largest yields of one outlet of the scenario (default: its only one). growth in 1/h."""
+        case = self.case(question)
+        number = cases.outlet_number(case, self.facts, outlet)
+        answer = find_ceiling(self.facts, case, self.case(question, opened=True), number, growth)
+        return self._result("ceiling", case, (), (), answer, case.findings + answer.findings)
+
+    def grows(self, question: Question) -> Result:
+        """Whether the strain grows on the medium, and if not, what is missing."""
+        case = self.case(question)
+        answer = find_growth(self.facts, case)
+        return self._result("grows", case, (), (), answer, case.findings + answer.findings)
+
+    def _result(self, kind: str, case: Case, draws: Any, rows: Any, answer: Any, findings: Any) -> Result:
+        return Result(kind, case, self.facts.version, self.facts, tuple(draws), tuple(rows), answer,
+                      tuple(dict.fromkeys(findings)), tuple(sorted(self.plugins.used)))
+
+
+def _outlets(case: Case) -> Any:
+    """The outlets to drain: those asked for and, where the case grows, biomass."""
+    grows = case.growth is None or case.growth > 0
+    return case.demands + (cases.biomass(case),) if grows else case.demands
+
+
+def _scalars(case: Case) -> dict[str, float]:
+    """Rates known before anything is solved: stated ones, and yields times stated uptakes (else 0)."""
+    fed = sum(f.uptake or 0.0 for f in case.feeds)
+    scalars = {f"outlet.{i}": d.rate if d.rate is not None else fed * (d.yield_per_feed or 0.0)
+               for i, d in enumerate(case.demands)}
+    scalars["growth"] = case.growth if case.growth is not None else fed * (case.growth_yield or 0.0)
+    return scalars
+
+
+def drains(question: Question) -> Result:
+    """`Desk().drains` for one question."""
+    return Desk().drains(question)
+
+
+def refills(question: Question) -> Result:
+    """`Desk().refills` for one question."""
+    return Desk().refills(question)
+
+
+def ceiling(question: Question, outlet: str = "", growth: float = 0.0) -> Result:
+    """`Desk().ceiling` for one question."""
+    return Desk().ceiling(question, outlet, growth)
+
+
+def grows(question: Question) -> Result:
+    """`Desk().grows` for one question."""
+    return Desk().grows(question)
