@@ -16,7 +16,7 @@ from typing import TYPE_CHECKING, Any
 
 import pluggy
 
-from headrace.errors import HeadraceError, PluginError
+from headrace.errors import HeadraceError, InputError, PluginError
 from headrace.hooks import merge
 from headrace.hooks.entry import HOOKS, Entry, Refusal, describe
 from headrace.hooks.options import options, validate
@@ -125,6 +125,9 @@ class Manager:
         Raises InputError, with the key, for the first fault.
         """
         for name, given in case.plugin_options.items():
+            if name not in self.entries and not any(refusal.name == name for refusal in self.refused):
+                near = nearest(name, self.entries)
+                raise InputError(f"no plugin {name!r}", key=f"plugin.{name}", near=near, hint="headrace plugins lists all")
             plugin = self.plugin(name)
             validate(name, getattr(plugin, "options", None), given)
         return case
@@ -271,7 +274,7 @@ class Manager:
 
 def survey(package: str = "headrace_plugins") -> tuple[Entry, ...]:
     """The entries of all plugin classes in the shipped plugins' package, read from the classes, by kind and name."""
-    root = Path(str(importlib.import_module(package).__file__)).parent
+    root = Path(importlib.import_module(package).__path__[0])
     found: list[Entry] = []
     for path in sorted(root.rglob("*.py")):
         parts = path.relative_to(root).with_suffix("").parts

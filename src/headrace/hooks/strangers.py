@@ -55,7 +55,9 @@ def read(path: str, distribution: str) -> Iterator[Pointer]:
         return
     section = ""
     for raw in data.decode("utf-8", "replace").splitlines():
-        line = raw.split("#", 1)[0].strip()
+        line = raw.strip()
+        if line.startswith("#"):
+            continue
         if line.startswith("["):
             section = line.strip("[] ")
         elif section == GROUP and "=" in line:

@@ -4,4 +4,5 @@ from __future__ import annotations
 
 from headrace.hooks.entry import Entry
 
-FIRST_PARTY: tuple[Entry, ...] = ()
+FIRST_PARTY: tuple[Entry, ...] = (
+)

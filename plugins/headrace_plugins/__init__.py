@@ -1,0 +1,1 @@
+"""The plugins that ship with Headrace, through the same hooks as a stranger's: one file or folder = one plugin."""
