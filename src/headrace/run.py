@@ -9,7 +9,7 @@ from typing import Any
 import msgspec
 
 from headrace import case as cases
-from headrace import graph
+from headrace.hooks import brought
 from headrace.hooks.bench import Bench
 from headrace.hooks.manager import Manager
 from headrace.network.build import build
@@ -31,8 +31,7 @@ class Desk:
 
     def __init__(self, *, cache: bool = True, strangers: bool = True) -> None:
         self.plugins = Manager.load(strangers=strangers)
-        self.facts: Facts = graph.load(extra=self.plugins.fact_folders(), cache=cache)
-        self.plugins.check_families(self.facts.outlets.values())
+        self.facts: Facts = brought.facts(self.plugins, cache=cache)
 
     def scenario(self, question: Question) -> Scenario:
         """A scenario from a path, TOML or JSON text, plain data, or as it is."""

@@ -1,0 +1,116 @@
+"""All that a plugin imports: the values it gets and gives, errors, and exact numbers.
+
+A plugin is a class with `name` and `summary` and, as it needs them, `families`, `facts_needed`, `options` and
+`example`; its methods named like a hook (`facts`, `drains`, `refills`, `checks`, `report`) are its hooks. See DEVELOPERS.md.
+"""
+
+from __future__ import annotations
+
+from fractions import Fraction
+
+from headrace.errors import HeadraceError, InputError, PluginError
+from headrace.hooks.bench import Bench
+from headrace.hooks.merge import LEVELS
+from headrace.hooks.options import options
+from headrace.names import nearest, slugify
+from headrace.network.build import Network
+from headrace.network.routes import RouteBook
+from headrace.values.answers import (
+    CompartmentLedger,
+    Crossing,
+    Document,
+    DrainRow,
+    Draw,
+    FeedRow,
+    GroupRow,
+    Ledger,
+    LedgerRow,
+    PoolTerm,
+    RateRow,
+    RefillAnswer,
+    RefillRow,
+    Repair,
+    Result,
+    Shortage,
+)
+from headrace.values.case import Case, Demand, Feed, Finding, Level, Limit, Supplement
+from headrace.values.changes import Add, Change, Close, LetOut, Raise, Reopen, Scale, Supply, Unrule
+from headrace.values.facts import Compound, Facts, Host, HostReaction, Outlet, Reaction, Route
+
+__all__ = [
+    "LEVELS",
+    "Add",
+    "Bench",
+    "Case",
+    "Change",
+    "Close",
+    "CompartmentLedger",
+    "Compound",
+    "Crossing",
+    "Demand",
+    "Document",
+    "DrainRow",
+    "Draw",
+    "Facts",
+    "Feed",
+    "FeedRow",
+    "Finding",
+    "Fraction",
+    "GroupRow",
+    "HeadraceError",
+    "Host",
+    "HostReaction",
+    "InputError",
+    "Ledger",
+    "LedgerRow",
+    "LetOut",
+    "Level",
+    "Limit",
+    "Network",
+    "Outlet",
+    "PluginError",
+    "PoolTerm",
+    "Raise",
+    "RateRow",
+    "Reaction",
+    "RefillAnswer",
+    "RefillRow",
+    "Reopen",
+    "Repair",
+    "Result",
+    "Route",
+    "RouteBook",
+    "Scale",
+    "Shortage",
+    "Supplement",
+    "Supply",
+    "Unrule",
+    "exact",
+    "nearest",
+    "options",
+    "shares",
+    "slugify",
+]
+
+
+def exact(number: str | int | Fraction) -> Fraction:
+    """A number as an exact fraction, from its text; a float is refused, since it has lost its digits already.
+
+    >>> exact("0.1") + exact("1/5")
+    Fraction(3, 10)
+    """
+    if isinstance(number, float):
+        raise TypeError(f"{number!r} is a float; write it as text to keep it exact")
+    return Fraction(number)
+
+
+def shares(parts: dict[str, Fraction]) -> dict[str, Fraction]:
+    """Shares as fractions of their sum: share_i = part_i / sum of parts. Raises ValueError when a part is negative or all are 0.
+
+    >>> shares({"a": Fraction(1), "b": Fraction(3)})
+    {'a': Fraction(1, 4), 'b': Fraction(3, 4)}
+    """
+    total = sum(parts.values(), Fraction(0))
+    if total <= 0 or min(parts.values()) < 0:
+        raise ValueError("parts must be at least 0 and not all 0")
+    return {name: part / total for name, part in parts.items()}
