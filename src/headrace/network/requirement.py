@@ -68,7 +68,7 @@ def require(net: Network, draws: Sequence[Draw] = ()) -> RefillAnswer:
     least = aim.least_carbon(net) if not aim.is_free(net) else None
     return RefillAnswer(
         answer="feasible", aim=solved.words, drains=drain_rows(net.facts, draws, solved.scalars),
-        ledger=ledger(net, rates, solved.scalars), refills=tuple(rows), groups=tuple(g for g, _ in groups.values()),
+        ledger=ledger(net, rates, solved.scalars, draws), refills=tuple(rows), groups=tuple(g for g, _ in groups.values()),
         feed=_feeds(net, rates), crossings=inside, drawn=out, shortage=(), repairs=(), closure=closure(net, inside + out),
         removals=_removals(net, solved), rates=_rates(net, solved), energy=_energy(net, solved), scalars=solved.scalars,
         surplus_carbon=None if least is None else solved.carbon - least,

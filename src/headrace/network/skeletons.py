@@ -8,11 +8,11 @@ coenzyme, counted as drained). Reactions that join compartments carry y S of eac
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from headrace.network.build import Column, Network
-from headrace.values.answers import CompartmentLedger, Ledger, LedgerRow
+from headrace.values.answers import CompartmentLedger, Draw, Ledger, LedgerRow
 from headrace.values.facts import Facts
 
 SMALL = 1e-12
@@ -55,17 +55,19 @@ def label(net: Network, column: Column) -> str:
     return net.facts.compounds[column.name].label if column.name in net.facts.compounds else column.name
 
 
-def ledger(net: Network, x: Mapping[int, float], scalars: Mapping[str, float]) -> Ledger:
+def ledger(net: Network, x: Mapping[int, float], scalars: Mapping[str, float], draws: Sequence[Draw] = ()) -> Ledger:
     """The ledger of given rates. x: rate per column; scalars: rate per demand scalar. All terms >= 0, mmol/gDW/h.
 
-    The terms are summed from the columns one by one and never from the balance, so a wrong content or a wrong sign
-    leaves a residual.
+    What outlets drain comes from their exact route vectors (`draws`), all else from contents and rates: y S v = y d
+    holds for any y, so only two independent accounts can disagree, and a wrong content or a dropped return leaves a
+    residual. A scalar without a draw is drained by contents alone.
     """
     rows: list[LedgerRow] = []
     routes = on_route(net.facts)
     medium = next(c.slug for c in net.host.compartments if c.role == "medium")
     for scalar, rate in scalars.items():
-        rows.extend(_drained(net, scalar, rate))
+        own = [d for d in draws if scalar in d.scale]
+        rows.extend(_from_draws(net, own, scalars) if own else _drained(net, scalar, rate))
     for number, rate in x.items():
         if abs(rate) < SMALL:
             continue
@@ -78,6 +80,8 @@ def ledger(net: Network, x: Mapping[int, float], scalars: Mapping[str, float]) -
         if abs(what.made) > SMALL:
             place = max(what.by, key=lambda k: abs(what.by[k]))
             kind = _kind(net, column, what.made, routes)
+            if kind == "drained" and draws:  # the entry into a coenzyme: part of that outlet's route vector
+                continue
             rows.append(LedgerRow("left" if what.made < 0 else "right", kind, label(net, column), place,
                                   abs(what.made) * rate))
     return _sum(net, rows, x, scalars)
@@ -86,7 +90,23 @@ def ledger(net: Network, x: Mapping[int, float], scalars: Mapping[str, float]) -
 def _kind(net: Network, column: Column, made: float, routes: frozenset[str]) -> str:
     if made > 0:
         return "refilled"
-    return "drained" if column.kind == "row" and net.case.rows[column.name].reaction in routes else "removed"
+    if column.kind != "row" or net.case.rows[column.name].reaction not in routes:
+        return "removed"
+    terms = net.facts.reactions[net.case.rows[column.name].reaction].terms
+    coenzyme = any(net.facts.compounds[t.compound].carrier and t.count * column.sign > 0 for t in terms)
+    return "drained" if coenzyme else "removed"
+
+
+def _from_draws(net: Network, draws: Sequence[Draw], scalars: Mapping[str, float]) -> list[LedgerRow]:
+    places = {f"outlet.{i}": d.place for i, d in enumerate(net.case.demands)}
+    home = next(c.slug for c in net.host.compartments if c.role == "cytosol")
+    total: dict[tuple[str, str], float] = defaultdict(float)
+    for draw in draws:
+        rate = 1.0
+        for scalar in draw.scale:
+            rate *= scalars.get(scalar, 0.0)
+        total[draw.label, places.get(draw.scale[0]) or home] += float(draw.skeletons) * rate
+    return [LedgerRow("left", "drained", what, place, value) for (what, place), value in total.items() if abs(value) > SMALL]
 
 
 def _drained(net: Network, scalar: str, rate: float) -> list[LedgerRow]:
