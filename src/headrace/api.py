@@ -14,6 +14,7 @@ from headrace.hooks.merge import LEVELS
 from headrace.hooks.options import options
 from headrace.names import nearest, slugify
 from headrace.network.build import Network
+from headrace.network.requirement import require
 from headrace.network.routes import RouteBook
 from headrace.values.answers import (
     CompartmentLedger,
@@ -88,6 +89,7 @@ __all__ = [
     "exact",
     "nearest",
     "options",
+    "require",
     "shares",
     "slugify",
 ]

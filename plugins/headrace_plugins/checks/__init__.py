@@ -1,0 +1,1 @@
+"""What a case is warned of."""

@@ -1,0 +1,1 @@
+"""Methods that answer what must be put back."""
