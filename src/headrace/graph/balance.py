@@ -22,9 +22,7 @@ def imbalance(terms: Iterable[Term], compounds: Mapping[str, Compound]) -> dict[
         side = made if term.count > 0 else taken
         for what, number in {**compound.formula, "charge": compound.charge}.items():
             side[what] += abs(term.count) * number
-    return {
-        what: (taken[what], made[what]) for what in sorted({*taken, *made}) if taken.get(what, 0) != made.get(what, 0)
-    }
+    return {what: (taken[what], made[what]) for what in sorted({*taken, *made}) if taken.get(what, 0) != made.get(what, 0)}
 
 
 def described(differences: Mapping[str, tuple[Fraction, Fraction]]) -> str:

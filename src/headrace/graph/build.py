@@ -116,7 +116,8 @@ def participants(entry: Entry, predicate: str, sign: int, transport: bool = Fals
     found = []
     for part in entry.parts(predicate):
         slug = part.ref(terms.HAS_COMPOUND, terms.COMPOUND_BASE, terms.COMPOUND)
-        count = part.number(terms.COUNT) or Fraction(0)
+        number = part.number(terms.COUNT)
+        count = Fraction(1) if number is None else number
         if count <= 0:
             entry.fault("bad-count", f"counts {slug} with {count}; accepted: a number above 0")
         found.append(Term(slug, sign * count, part.word(terms.SIDE, terms.SIDES, required=transport)))
@@ -154,6 +155,8 @@ def route(entry: Entry, slug: str) -> Route:
         uses=entry.refs(terms.USES, terms.REACTION_BASE, terms.REACTION),
         basis=entry.basis(),
         hosts=entry.refs(terms.HAS_HOST, terms.HOST_BASE, terms.HOST),
+        rows=entry.refs(terms.USES_ROW, terms.HOST_BASE, terms.HOST_REACTION),
+        preferred=entry.flag(terms.PREFERRED),
     )
 
 
@@ -173,9 +176,7 @@ def role(entry: Entry, slug: str) -> tuple[str, ...]:
 def pairs(entry: Entry) -> Iterable[tuple[str, str]]:
     """(reduced, oxidised) carriers of a role."""
     for part in entry.parts(terms.PAIR):
-        reduced, oxidised = (
-            part.ref(name, terms.COMPOUND_BASE, terms.COMPOUND) for name in (terms.REDUCED, terms.OXIDISED)
-        )
+        reduced, oxidised = (part.ref(name, terms.COMPOUND_BASE, terms.COMPOUND) for name in (terms.REDUCED, terms.OXIDISED))
         yield reduced, oxidised
 
 

@@ -51,9 +51,7 @@ def host(entry: Entry, slug: str, reactions: Mapping[str, Reaction]) -> Host:
         reactions=tuple(row(part, own, reactions) for part in local.entries(terms.HOST_REACTION)),
         expressions=tuple(expression(part, own) for part in local.entries(terms.EXPRESSION)),
         quantities=tuple(
-            quantity(part, own)
-            for part in local.entries(terms.QUANTITY)
-            if not entry.reader.is_a(part.node, terms.BIOMASS_PART)
+            quantity(part, own) for part in local.entries(terms.QUANTITY) if not entry.reader.is_a(part.node, terms.BIOMASS_PART)
         ),
         composition=tuple(part_of_biomass(part, own) for part in local.entries(terms.BIOMASS_PART)),
         absences=tuple(absence(part, slug) for part in local.entries(terms.ABSENCE)),
@@ -76,17 +74,8 @@ def compartment(entry: Entry, own: str) -> Compartment:
 def row(entry: Entry, own: str, reactions: Mapping[str, Reaction]) -> HostReaction:
     """A reaction as the host has it: either in a place, or between an outer and an inner one."""
     reaction = entry.ref(terms.HAS_REACTION, terms.REACTION_BASE, terms.REACTION)
-    transport = reaction in reactions and reactions[reaction].transport
-    place, outer, inner = (
-        entry.ref(predicate, own, terms.COMPARTMENT, required=reaction in reactions and transport == between)
-        for predicate, between in ((terms.PLACE, False), (terms.OUTER, True), (terms.INNER, True))
-    )
-    if transport and place:
-        entry.fault("place-of-transport", f"stands in {place}, but moves between hr:outer and hr:inner")
-    if not transport and (outer or inner):
-        entry.fault("place-of-transport", f"names {outer or inner} as a side, but {reaction} is no hr:Transport")
-    if outer and outer == inner:
-        entry.fault("place-of-transport", f"both sides are {outer}")
+    between = reactions[reaction].transport if reaction in reactions else None
+    place, outer, inner = _where(entry, own, between)
     isozymes = [Isozyme(part.texts(terms.GENE)) for part in entry.parts(terms.ISOZYME)]
     if any(not isozyme.genes for isozyme in isozymes):
         entry.fault("missing-part", "has an hr:isozyme without hr:gene")
@@ -102,6 +91,21 @@ def row(entry: Entry, own: str, reactions: Mapping[str, Reaction]) -> HostReacti
         isozymes=tuple(sorted(isozymes, key=lambda isozyme: isozyme.genes)),
         expression=entry.refs(terms.HAS_EXPRESSION, own, terms.EXPRESSION),
     )
+
+
+def _where(entry: Entry, own: str, between: bool | None) -> tuple[str, str, str]:
+    """(place, outer, inner). between: whether the reaction moves between two places; None when it is unknown."""
+    given = {name: bool(entry.says.get(name)) for name in (terms.PLACE, terms.OUTER, terms.INNER)}
+    misplaced = [name for name, there in given.items() if there and between == (name == terms.PLACE)]
+    if between is not None and misplaced:
+        wants = "moves between hr:outer and hr:inner" if between else "stands in one hr:place: it is no hr:Transport"
+        entry.fault("place-of-transport", f"states {', '.join(map(short, misplaced))}, but its reaction {wants}")
+    place, outer, inner = (
+        entry.ref(name, own, terms.COMPARTMENT, required=not misplaced and between == (name != terms.PLACE)) for name in given
+    )
+    if outer and outer == inner:
+        entry.fault("place-of-transport", f"both sides are {outer}")
+    return place, outer, inner
 
 
 def expression(entry: Entry, own: str) -> Expression:
@@ -130,7 +134,8 @@ def quantity(entry: Entry, own: str) -> Quantity:
     low, high = entry.number(terms.LOW, required=False), entry.number(terms.HIGH, required=False)
     number = Fraction(0) if value is None else value
     if value is not None and not (number if low is None else low) <= number <= (number if high is None else high):
-        entry.fault("outside-range", f"is {value}, outside its own range {low} to {high}")
+        texts = [entry.number_text(predicate) or "open" for predicate in (terms.VALUE, terms.LOW, terms.HIGH)]
+        entry.fault("outside-range", f"is {texts[0]}, outside its own range {texts[1]} to {texts[2]}")
     return Quantity(
         slug=entry.slug(own),
         about=_about(entry, own),

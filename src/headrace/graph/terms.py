@@ -176,6 +176,8 @@ DRAWS = HR + "draws"
 FORM = HR + "form"
 DEFAULT = HR + "default"
 USES = HR + "uses"
+USES_ROW = HR + "usesRow"
+PREFERRED = HR + "preferred"
 
 # What the core asks for without knowing its name
 ROLE_CLASS = HR + "Role"

@@ -152,9 +152,7 @@ def _distinct(quads: Iterable[Quad | Triple]) -> Iterable[tuple[NamedNode | Blan
             yield triple
 
 
-def _refuse_shared_blanks(
-    uses: dict[BlankNode, int], about: dict[NamedNode | BlankNode, dict[str, list[Node]]]
-) -> None:
+def _refuse_shared_blanks(uses: dict[BlankNode, int], about: dict[NamedNode | BlankNode, dict[str, list[Node]]]) -> None:
     for node in about:
         if isinstance(node, BlankNode) and uses.get(node, 0) == 0:
             raise ValueError(f"a blank node that nothing refers to: give it an IRI ({_gist(about[node])})")
