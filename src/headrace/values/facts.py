@@ -231,7 +231,11 @@ class Outlet(Struct, frozen=True):
 
 
 class Route(Struct, frozen=True):
-    """The reactions that make one compound from boundary pools. hosts empty = any host that has them all."""
+    """The steps that make one compound from boundary pools and from compounds with routes of their own.
+
+    hosts empty = any host. rows: rows ("host/row") that say where a reaction of `uses` runs, for hosts that have it in
+    several compartments (default: the cytosol). preferred: goes before other routes that the case expresses as well.
+    """
 
     slug: str
     label: str
@@ -239,6 +243,8 @@ class Route(Struct, frozen=True):
     uses: tuple[str, ...]
     basis: Basis
     hosts: tuple[str, ...] = ()
+    rows: tuple[str, ...] = ()
+    preferred: bool = False
 
 
 class Enzyme(Struct, frozen=True):
@@ -256,7 +262,8 @@ class Facts(Struct, frozen=True):
 
     contents: skeletons per mole of each compound (derived). roles: what the core asks for without knowing its name
     (graph_data/ontology/roles.ttl), role slug -> entity slugs: energy-release (reaction), oxygen, carbon-dioxide,
-    inorganic-carbon, water, proton, motive-proton, ammonium. electron_pairs: reduced carrier -> oxidised carrier.
+    inorganic-carbon, water, proton, motive-proton, ammonium; for route vectors also mineral, peroxide, one-carbon,
+    one-carbon-carrier, adenylate, by-product. electron_pairs: reduced carrier -> oxidised carrier.
     """
 
     version: str
