@@ -15,8 +15,10 @@ from headrace.hooks.options import options
 from headrace.names import nearest, slugify
 from headrace.network.build import Network
 from headrace.network.requirement import require
-from headrace.network.routes import RouteBook
+from headrace.network.requirement import require
+from headrace.network.routes import RouteBook, RouteVector
 from headrace.values.answers import (
+    Answer,
     CompartmentLedger,
     Crossing,
     Document,
@@ -41,6 +43,7 @@ from headrace.values.facts import Compound, Facts, Host, HostReaction, Outlet, R
 __all__ = [
     "LEVELS",
     "Add",
+    "Answer",
     "Bench",
     "Case",
     "Change",
@@ -81,6 +84,7 @@ __all__ = [
     "Result",
     "Route",
     "RouteBook",
+    "RouteVector",
     "Scale",
     "Shortage",
     "Supplement",
