@@ -139,7 +139,7 @@ class _Maker:
         for slug, row in sorted(self.case.rows.items()):
             if self.case.levels[slug].level == "off":
                 continue
-            terms = terms_of(self.facts, self.host, row)
+            terms = self._stated_coupling(row, terms_of(self.facts, self.host, row))
             if row.direction in ("forward", "both"):
                 self.column(Column("row", slug), terms, 0.0, INFINITY)
             if row.direction in ("reverse", "both"):
@@ -149,6 +149,24 @@ class _Maker:
         if not any(r.reaction == release.slug and self.case.levels[s].level != "off" for s, r in self.case.rows.items()):
             self.column(Column("spill", release.slug), [(place[t.compound], float(t.count)) for t in release.terms],
                         0.0, INFINITY)
+
+    def _stated_coupling(self, row: HostReaction, terms: list[tuple[Pool, float]]) -> list[tuple[Pool, float]]:
+        """The row's terms, with another number of motive protons per ATP where the case states one.
+
+        What is taken more from the membrane comes out as plain protons where the row works, so atoms and charge stay.
+        """
+        stated = self.case.energy.get("protons-per-atp")
+        motive, protons = self.facts.roles["motive-proton"], self.facts.roles["proton"]
+        release = self.facts.reactions[self.facts.roles["energy-release"][0]]
+        charged = {t.compound for t in release.terms if t.count < 0 and self.facts.compounds[t.compound].carrier}
+        made = sum(count for (name, _), count in terms if name in charged)
+        taken = -sum(count for (name, _), count in terms if name in motive)
+        if stated is None or made <= 0 or taken <= 0:
+            return terms
+        more = stated * made - taken
+        here = next((pool for pool, _ in terms if pool[0] in protons), (protons[0], row.place or row.inner))
+        membrane = next(pool for pool, _ in terms if pool[0] in motive)
+        return [*terms, (membrane, -more), (here, more)]
 
     def add_crossings(self) -> None:
         case, medium = self.case, self.medium
