@@ -38,7 +38,7 @@ def probes(net: Network) -> Iterator[tuple[str, dict[int, float]]]:
     motive, proton = facts.roles["motive-proton"][0], facts.roles["proton"][0]
     membrane = next(c.slug for c in net.host.compartments if c.role == "membrane")
     if net.host.proton_convention == "inside-balanced":
-        yield "motive protons", {index[(proton, inside)]: -1.0}
+        yield "motive protons", {index[(proton, inside)]: 1.0}  # a proton that must be pumped out
     elif (motive, membrane) in index:
         yield "motive protons", {index[(motive, membrane)]: -1.0}
     for reduced, oxidised in facts.electron_pairs.items():
