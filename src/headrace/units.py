@@ -223,7 +223,7 @@ def _pieces(unit: str) -> list[tuple[str, int]]:
 
 
 def _product(text: str) -> list[tuple[str, int]]:
-    """"gDW h^-1" -> gDW 1, h -1."""
+    """ "gDW h^-1" -> gDW 1, h -1."""
     found = [_PIECE.fullmatch(part) for part in text.split()]
     if not found or None in found:
         raise ValueError(f"{text!r} is not a unit")

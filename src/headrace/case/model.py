@@ -1,0 +1,124 @@
+"""The keys of a scenario file: names, types, and what each accepts in words. The JSON Schema comes from here.
+
+Quantities are text with a unit; the `Kind` in their annotation says which. What the user leaves out is UNSET.
+"""
+
+from __future__ import annotations
+
+from typing import Annotated, Any, Literal
+
+import msgspec
+from msgspec import UNSET, Meta, Struct, UnsetType
+
+from headrace import units
+
+Name = Annotated[str, Meta(min_length=1, max_length=200)]
+Text = Annotated[str, Meta(max_length=1000)]
+Rate = Annotated[str, Meta(description=units.RATE.accepted), units.RATE]
+MolarRate = Annotated[str, Meta(description=units.MOLAR_RATE.accepted), units.MOLAR_RATE]
+Growth = Annotated[str | Literal[0], Meta(description=units.GROWTH.accepted), units.GROWTH]
+Yield = Annotated[str, Meta(description=units.YIELD.accepted), units.YIELD]
+Productivity = Annotated[str, Meta(description=units.PRODUCTIVITY.accepted), units.PRODUCTIVITY]
+CellDensity = Annotated[str, Meta(description=units.CELL_DENSITY.accepted), units.CELL_DENSITY]
+Capacity = Annotated[str, Meta(description=units.CAPACITY.accepted), units.CAPACITY]
+Content = Annotated[str, Meta(description=units.CONTENT.accepted), units.CONTENT]
+Ratio = Annotated[str, Meta(description=units.RATIO.accepted), units.RATIO]
+Share = Annotated[str, Meta(description=units.SHARE.accepted), units.SHARE]
+
+# A scenario is small; this bounds what a stranger's file can make the program do.
+LONGEST_LIST = 500
+
+
+class Table(Struct, frozen=True, rename="kebab", forbid_unknown_fields=True):
+    """A table of the file: keys are the fields' names with hyphens, and no others."""
+
+
+class Feed(Table, frozen=True):
+    """A carbon source; without an uptake the least feed is asked for."""
+
+    substrate: Name
+    uptake: Rate | UnsetType = UNSET
+
+
+class Supplement(Table, frozen=True):
+    """A compound in the medium besides the feed, with the largest uptake."""
+
+    compound: Name
+    rate: MolarRate | UnsetType = UNSET
+
+
+class Conditions(Table, frozen=True):
+    """What surrounds the cells. oxygen-rate: the largest oxygen uptake, for limited oxygen."""
+
+    oxygen: Literal["aerobic", "limited", "anaerobic"] | UnsetType = UNSET
+    oxygen_rate: MolarRate | UnsetType = UNSET
+    supplements: list[Name | Supplement] = []
+    release: list[Name] | UnsetType = UNSET
+    circumstances: list[Name] = []
+
+
+class Strain(Table, frozen=True):
+    """Edits of the host: genes, enzymes, EC numbers, reactions or single rows; limits as rates or activities."""
+
+    remove: list[Name] = []
+    add: list[Name] = []
+    limit: dict[str, Capacity] = {}
+
+
+class Outlet(Table, frozen=True):
+    """A product: exactly one of rate, yield and productivity; biomass is the cell density of a productivity."""
+
+    product: Name
+    rate: Rate | UnsetType = UNSET
+    yield_: Yield | UnsetType = msgspec.field(name="yield", default=UNSET)
+    productivity: Productivity | UnsetType = UNSET
+    biomass: CellDensity | UnsetType = UNSET
+    form: Name | UnsetType = UNSET
+    options: dict[str, Any] = {}
+
+
+class Energy(Table, frozen=True):
+    """Energetics that differ from the host's facts."""
+
+    p_o_nadh: Ratio | UnsetType = UNSET
+    maintenance: MolarRate | UnsetType = UNSET
+    growth_associated_atp: Content | UnsetType = UNSET
+    basal_level: Content | UnsetType = UNSET
+
+
+class Aim(Table, frozen=True):
+    """How the answer is chosen. slack: how far from the best; expression: as expressed, or every gene of the host."""
+
+    slack: Share | UnsetType = UNSET
+    expression: Literal["as expressed", "open"] = "as expressed"
+
+
+class Document(Table, frozen=True):
+    """A whole scenario file."""
+
+    host: Name
+    feed: list[Feed]
+    title: Text = ""
+    growth: Growth | UnsetType = UNSET
+    conditions: Conditions = Conditions()
+    strain: Strain = Strain()
+    outlet: list[Outlet] = []
+    energy: Energy = Energy()
+    aim: Aim = Aim()
+    plugin: dict[str, dict[str, Any]] = {}
+
+
+# Keys that are planned: they are refused by name, never ignored.
+PLANNED: dict[str, frozenset[str]] = {
+    "": frozenset({"parent", "phase", "phases", "medium", "measured", "environment", "uncertainty", "sampling"}),
+    "conditions": frozenset({"medium", "temperature", "ph", "ionic-strength", "environment"}),
+    "feed": frozenset({"phase", "uncertainty"}),
+    "outlet": frozenset({"phase", "uncertainty"}),
+    "aim": frozenset({"alternatives", "certify"}),
+}
+
+
+def schema() -> dict[str, Any]:
+    """JSON Schema (2020-12) of a scenario, for editors and other programs."""
+    body = msgspec.json.schema(Document)
+    return {"$schema": "https://json-schema.org/draft/2020-12/schema", "title": "Headrace scenario", **body}
