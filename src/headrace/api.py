@@ -15,7 +15,6 @@ from headrace.hooks.options import options
 from headrace.names import nearest, slugify
 from headrace.network.build import Network
 from headrace.network.requirement import require
-from headrace.network.requirement import require
 from headrace.network.routes import RouteBook, RouteVector
 from headrace.values.answers import (
     Answer,

@@ -30,7 +30,9 @@ def draw(**changes: Any) -> Draw:
     return Draw(**(given | changes))
 
 
-def ledger(drained: float = 2.0, released: float = 0.5, removed: float = 0.25, supplied: float = 0.75, gap: float = 0.0) -> Ledger:
+def ledger(
+    drained: float = 2.0, released: float = 0.5, removed: float = 0.25, supplied: float = 0.75, gap: float = 0.0
+) -> Ledger:
     """drained + released + removed = refilled + supplied, with `gap` too little on the right. 2 + 0.5 + 0.25 = 2 + 0.75."""
     refilled = drained + released + removed - supplied - gap
     rows = [

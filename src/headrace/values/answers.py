@@ -138,6 +138,8 @@ class GroupRow(Struct, frozen=True):
 
 
 class FeedRow(Struct, frozen=True):
+    """What is taken of one carbon source: uptake in mmol/gDW/h, carbon in mmol C/gDW/h."""
+
     substrate: str
     uptake: float
     carbon: float
@@ -151,6 +153,8 @@ class Crossing(Struct, frozen=True):
 
 
 class Shortage(Struct, frozen=True):
+    """A pool that can't be served: missing in mmol/gDW/h."""
+
     pool: str
     missing: float
 
@@ -164,6 +168,8 @@ class Repair(Struct, frozen=True):
 
 
 class RateRow(Struct, frozen=True):
+    """The net forward rate of a row at the aim, and over its optima (mmol/gDW/h)."""
+
     reaction: str
     rate: float
     least: float | None = None
