@@ -13,12 +13,15 @@ import unicodedata
 from collections import defaultdict
 from collections.abc import Iterable, Sequence
 from difflib import get_close_matches
+from functools import cached_property, lru_cache
 from typing import NamedTuple
 
 from headrace.errors import InputError
 from headrace.values.facts import Compound, Facts, Host, Outlet
 
 _GREEK = {"α": "alpha", "β": "beta", "γ": "gamma", "δ": "delta", "ε": "epsilon", "ω": "omega"}
+_NOT_PLAIN = re.compile(r"[^a-z0-9]+")
+_HYPHENS = re.compile(r"(?<![0-9])-|-(?![0-9])")
 
 
 class Entity(NamedTuple):
@@ -44,10 +47,11 @@ def slugify(text: str) -> str:
     >>> slugify("β-Alanine")
     'beta-alanine'
     """
-    for letter, word in _GREEK.items():
-        text = text.replace(letter, word)
-    plain = unicodedata.normalize("NFKD", text).encode("ascii", "ignore").decode()
-    return re.sub(r"[^a-z0-9]+", "-", plain.lower()).strip("-")
+    if not text.isascii():
+        for letter, word in _GREEK.items():
+            text = text.replace(letter, word)
+        text = unicodedata.normalize("NFKD", text).encode("ascii", "ignore").decode()
+    return _NOT_PLAIN.sub("-", text.lower()).strip("-")
 
 
 def nearest(name: str, known: Iterable[str], limit: int = 3) -> tuple[str, ...]:
@@ -70,12 +74,20 @@ class NameIndex:
         self.command = command
         self.order = tuple(order)
         self.names = tuple(names)
-        self._rounds: tuple[dict[str, set[Entity]], ...] = (defaultdict(set), defaultdict(set), defaultdict(set))
+        self._slugs: dict[str, set[Entity]] = defaultdict(set)
+        self._texts: dict[str, set[Entity]] = defaultdict(set)
         for name in self.names:
-            self._rounds[0][name.entity.slug].add(name.entity)
-            self._rounds[1][name.text].add(name.entity)
-            self._rounds[2][_folded(name.text)].add(name.entity)
-            self._rounds[2][_folded(name.entity.slug)].add(name.entity)
+            self._slugs[name.entity.slug].add(name.entity)
+            self._texts[name.text].add(name.entity)
+
+    @cached_property
+    def _folds(self) -> dict[str, set[Entity]]:
+        """Folded texts and slugs; most look-ups end before they are needed, and folding thousands of names takes time."""
+        folds: dict[str, set[Entity]] = defaultdict(set)
+        for name in self.names:
+            folds[_folded(name.text)].add(name.entity)
+            folds[_folded(name.entity.slug)].add(name.entity)
+        return folds
 
     def find(self, name: str) -> Entity:
         """The one entity that `name` means. Raises InputError for an unknown or an ambiguous name."""
@@ -92,10 +104,11 @@ class NameIndex:
     def find_all(self, name: str) -> tuple[Entity, ...]:
         """All entities that `name` can mean, of the first kind in order; empty when it is unknown."""
         name = name.strip()
-        for known, key in zip(self._rounds, (name, name, _folded(name)), strict=True):
-            if key and (found := known.get(key)):
-                return self._first_kind(found)
-        return ()
+        if name and (found := self._slugs.get(name) or self._texts.get(name)):
+            return self._first_kind(found)
+        folded = _folded(name)
+        found = self._folds.get(folded) if folded else None
+        return self._first_kind(found) if found else ()
 
     def _first_kind(self, found: set[Entity]) -> tuple[Entity, ...]:
         for kind in self.order:
@@ -154,6 +167,7 @@ def _written(kind: str, slug: str, label: str, aliases: Sequence[str]) -> Iterab
     return (Name(text, entity) for text in (label, slug, *aliases) if text)
 
 
+@lru_cache(maxsize=None)
 def _folded(text: str) -> str:
     """Slug without hyphens, but for those between digits (EC numbers must not run together)."""
-    return re.sub(r"(?<![0-9])-|-(?![0-9])", "", slugify(text))
+    return _HYPHENS.sub("", slugify(text))
