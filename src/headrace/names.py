@@ -13,7 +13,7 @@ import unicodedata
 from collections import defaultdict
 from collections.abc import Iterable, Sequence
 from difflib import get_close_matches
-from functools import cached_property, lru_cache
+from functools import cache, cached_property
 from typing import NamedTuple
 
 from headrace.errors import InputError
@@ -167,7 +167,7 @@ def _written(kind: str, slug: str, label: str, aliases: Sequence[str]) -> Iterab
     return (Name(text, entity) for text in (label, slug, *aliases) if text)
 
 
-@lru_cache(maxsize=None)
+@cache
 def _folded(text: str) -> str:
     """Slug without hyphens, but for those between digits (EC numbers must not run together)."""
     return _HYPHENS.sub("", slugify(text))

@@ -31,7 +31,8 @@ _PLACE = re.compile(r"^(.+?)[\s,]+in the ([a-z -]+)$", re.IGNORECASE)
 class Phrase(Struct, frozen=True):
     """An edit taken apart. place: a compartment's slug or ""; direction: "" | reverse | both; words: what only describes.
 
-    entity: None when nothing has this name; own: whether the host knows it.
+    entity: None when nothing has this name; an enzyme's slug may be several, joined by commas, where the name is the
+    stem of their names. own: whether the host knows it.
     """
 
     text: str
@@ -92,15 +93,17 @@ class Catalysts:
         words = name.split()
         for start in range(len(words) if describing else 1):
             rest, before = " ".join(words[start:]), " ".join(words[:start])
-            for index, own in ((self.own, True), (self.foreign, False)):
-                if entity := self._one(index, rest):
-                    return Phrase(text, entity, own, place, direction, _affirmed(text, before))
+            if found := self._named(rest):
+                return Phrase(text, *found, place, direction, _affirmed(text, before))
         return Phrase(text, None, False, place, direction)
 
     def unknown(self, text: str) -> InputError:
         """The error for a name that nothing has, with the nearest of the host's and all names."""
-        known = [name.text for index in (self.own, self.foreign) for name in index.names if name.listed]
-        near = nearest(text, (name for name in known if slugify(name)))
+        listed = {name.text for index in (self.own, self.foreign) for name in index.names if name.listed}
+        known = [name for name in listed if slugify(name)]
+        words = text.split()
+        parts = (" ".join(words[start:]) for start in range(len(words)))
+        near = next((found for part in parts if (found := nearest(part, known))), ())
         hint = f"{self.own.command} lists the host's"
         return InputError(f"unknown gene, enzyme, EC number or reaction {text!r}", read=text, near=near, hint=hint)
 
@@ -117,7 +120,7 @@ class Catalysts:
     def label(self, entity: Entity) -> str:
         """The entity's name for people."""
         if entity.kind == "enzyme":
-            return self.facts.enzymes[entity.slug].label
+            return " and ".join(self.facts.enzymes[slug].label for slug in entity.slug.split(","))
         if entity.kind == "reaction":
             return self.facts.reactions[entity.slug].label
         if entity.kind == "row":
@@ -132,11 +135,35 @@ class Catalysts:
     def _is_of(self, entity: Entity, slug: str) -> bool:
         reaction = self.facts.reactions[slug]
         if entity.kind == "enzyme":
-            return reaction.enzyme == entity.slug
+            return reaction.enzyme in entity.slug.split(",")
         if entity.kind == "reaction":
             return slug == entity.slug
         enzyme = self.facts.enzymes.get(reaction.enzyme)
         return entity.kind == "ec" and entity.slug in {*reaction.ec, *(enzyme.ec if enzyme else ())}
+
+    def _named(self, text: str) -> tuple[Entity, bool] | None:
+        """The entity of a name and whether it is the host's own; whole names go before stems."""
+        for own, index in ((True, self.own), (False, self.foreign)):
+            if entity := self._one(index, text):
+                return entity, own
+        mine = {self.facts.reactions[row.reaction].enzyme for row in self.host.reactions}
+        variants = self._variants(text)
+        if chosen := [slug for slug in variants if slug in mine]:
+            return Entity("enzyme", ",".join(chosen)), True
+        if len(variants) > 1:
+            words = f"{text!r} can mean several enzymes"
+            raise InputError(words, read=text, accepted=", ".join(variants))
+        return (Entity("enzyme", variants[0]), False) if variants else None
+
+    def _variants(self, text: str) -> list[str]:
+        """Enzymes whose name is a stem and more: "malic enzyme" means its NAD and its NADP variant."""
+        stem = slugify(text)
+        if not stem.endswith(("ase", "-enzyme")):
+            return []
+        enzymes = self.facts.enzymes.values()
+        return sorted(
+            e.slug for e in enzymes if f"{stem}-" in (e.slug[: len(stem) + 1], slugify(e.label)[: len(stem) + 1])
+        )
 
     def _one(self, index: NameIndex, text: str) -> Entity | None:
         return index.find(text) if index.find_all(text) else None

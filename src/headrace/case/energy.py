@@ -17,6 +17,8 @@ STATED = {
     "growth-associated-atp": ("growth-associated-atp", units.CONTENT, False),
     "basal-level": ("basal-level", units.CONTENT, True),
 }
+# How messages call a kind, where its slug with blanks does not read well.
+WORDS = {"growth-associated-atp": "growth-associated ATP", "protons-per-nadh": "protons per NADH"}
 
 
 class Energy(Struct, frozen=True):
@@ -44,7 +46,7 @@ def energy(sheet: Sheet, oxygen: str) -> Energy:
             used.append(found.slug)
         elif not spare:
             with sheet.at(f"energy.{key}"):
-                missing = f"no {kind.replace('-', ' ')} is known for {sheet.host.label}"
+                missing = f"no {_words(kind)} is known for {sheet.host.label}"
                 raise InputError(missing, accepted=f"{key} in [energy]: {unit.accepted}")
     if sheet.document.energy.p_o_nadh is not UNSET:
         protons, quantity = _protons_per_atp(sheet, oxygen)
@@ -61,7 +63,7 @@ def known(sheet: Sheet, kind: str, oxygen: str) -> Quantity | None:
         found = next((quantity for quantity in own if quantity.condition == condition), None)
         if found is None:
             continue
-        words = f"{kind.replace('-', ' ')} {found.text} {sheet.facts.units.get(found.unit, found.unit)}"
+        words = f"{_words(kind)} {found.text} {sheet.facts.units.get(found.unit, found.unit)}"
         if condition == other:
             states = {"present": "with oxygen", "absent": "without oxygen"}
             message = f"{words} was measured {states[other]}; none {states[oxygen]} is known"
@@ -70,6 +72,10 @@ def known(sheet: Sheet, kind: str, oxygen: str) -> Quantity | None:
             sheet.say("note", "recalled-input", found.slug, f"{words} is recalled, not confirmed", found.basis)
         return found
     return None
+
+
+def _words(kind: str) -> str:
+    return WORDS.get(kind, kind.replace("-", " "))
 
 
 def _protons_per_atp(sheet: Sheet, oxygen: str) -> tuple[Fraction, str]:
