@@ -208,6 +208,9 @@ class _Maker:
             for compound, count in demand.draws.items():
                 place = place_of(facts, self.host, _anywhere(demand.place), compound, "")
                 self.draw(f"outlet.{number}", (compound, place), float(count))
+                if self.host.proton_convention == "inside-balanced":  # it leaves the cell without charge
+                    acid = float(count) * -facts.compounds[compound].charge
+                    self.draw(f"outlet.{number}", (facts.roles["proton"][0], place), acid)
 
     def _energy(self, scalar: str, amount: float) -> None:
         for term in self.facts.reactions[self.facts.roles["energy-release"][0]].terms:
