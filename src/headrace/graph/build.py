@@ -54,6 +54,7 @@ def collect(graph: Graph, version: str) -> tuple[Facts | None, list[Fault]]:
         sources=_table(reader, terms.DOCUMENT, terms.SOURCE_BASE, source),
         circumstances=_table(reader, terms.CIRCUMSTANCE, terms.CIRCUMSTANCE_BASE, _label),
         units=_table(reader, terms.UNIT, terms.UNIT_BASE, _label),
+        kinds=_kinds(reader),
         roles={slug: found for slug, found in roles.items() if found},
         electron_pairs=dict(pair for entry in reader.entries(terms.ROLE_CLASS) for pair in pairs(entry)),
     )
@@ -186,6 +187,12 @@ def _table(reader: Reader, kind: str, base: str, make: Callable[[Entry, str], Va
         slug = entry.slug(base)
         table[slug] = make(entry, slug)
     return table
+
+
+def _kinds(reader: Reader) -> dict[str, str]:
+    """The labels of the kinds of quantities; the vocabulary's other concepts are none."""
+    concepts = (entry for entry in reader.entries(terms.CONCEPT) if entry.node.startswith(terms.KIND_BASE))
+    return {entry.slug(terms.KIND_BASE): entry.text(terms.LABEL) for entry in concepts}
 
 
 def _label(entry: Entry, slug: str) -> str:

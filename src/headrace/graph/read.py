@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from collections import defaultdict
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping, Sequence
 
 from pyoxigraph import BlankNode, Literal, NamedNode, Quad, RdfFormat, Triple, parse
 
@@ -24,26 +24,45 @@ class Graph:
     """
 
     def __init__(self, files: Iterable[FactFile]) -> None:
+        """Read the files. Raises FactsError for the first one that is no Turtle."""
+        self._start()
+        for file in files:
+            self._read(file.name, quads(file))
+        self._finish()
+
+    @classmethod
+    def of(cls, statements: Mapping[str, Sequence[Quad]]) -> Graph:
+        """The same from statements that have been read: file name -> statements."""
+        graph = cls.__new__(cls)
+        graph._start()
+        for name, said in statements.items():
+            graph._read(name, said)
+        graph._finish()
+        return graph
+
+    def _start(self) -> None:
         self.about: dict[NamedNode | BlankNode, Statements] = defaultdict(lambda: defaultdict(list))
         self.files: dict[str, list[str]] = defaultdict(list)
         self.classes: dict[str, list[str]] = {}
-        members: dict[str, set[str]] = defaultdict(set)
-        for file in files:
-            for quad in quads(file):
-                self._add(quad, file.name, members)
-        self.classes = {name: sorted(nodes) for name, nodes in members.items()}
+        self._members: dict[str, set[str]] = defaultdict(set)
 
-    def _add(self, quad: Quad, file: str, members: dict[str, set[str]]) -> None:
-        if isinstance(quad.subject, Triple) or isinstance(quad.object, Triple):
-            raise FactsError(f"statements about statements are not read: {quad}", file=file)
-        self.about[quad.subject][quad.predicate.value].append(quad.object)
-        if isinstance(quad.subject, BlankNode):
-            return
-        known = self.files[quad.subject.value]
+    def _finish(self) -> None:
+        self.classes = {name: sorted(nodes) for name, nodes in self._members.items()}
+
+    def _read(self, file: str, said: Iterable[Quad]) -> None:
+        for quad in said:
+            if isinstance(quad.subject, Triple) or isinstance(quad.object, Triple):
+                raise FactsError(f"statements about statements are not read: {quad}", file=file)
+            self.about[quad.subject][quad.predicate.value].append(quad.object)
+            if isinstance(quad.subject, NamedNode):
+                self._note(quad.subject.value, quad, file)
+
+    def _note(self, subject: str, quad: Quad, file: str) -> None:
+        known = self.files[subject]
         if not known or known[-1] != file:
             known.append(file)
         if quad.predicate.value == terms.TYPE and isinstance(quad.object, NamedNode):
-            members[quad.object.value].add(quad.subject.value)
+            self._members[quad.object.value].add(subject)
 
     def file_of(self, node: str) -> str:
         """The file (the first by name) that describes a node; "" when none does."""
