@@ -263,7 +263,8 @@ class Facts(Struct, frozen=True):
     contents: skeletons per mole of each compound (derived). roles: what the core asks for without knowing its name
     (graph_data/ontology/roles.ttl), role slug -> entity slugs: energy-release (reaction), oxygen, carbon-dioxide,
     inorganic-carbon, water, proton, motive-proton, ammonium; for route vectors also mineral, peroxide, one-carbon,
-    one-carbon-carrier, adenylate, by-product. electron_pairs: reduced carrier -> oxidised carrier.
+    one-carbon-carrier, adenylate, acyl-carrier, by-product. electron_pairs: reduced carrier -> oxidised carrier.
+    kinds: the label of each kind of quantity.
     """
 
     version: str
@@ -276,6 +277,7 @@ class Facts(Struct, frozen=True):
     sources: dict[str, Source]
     circumstances: dict[str, str]
     units: dict[str, str]
+    kinds: dict[str, str] = {}
     contents: dict[str, Fraction] = {}
     roles: dict[str, tuple[str, ...]] = {}
     electron_pairs: dict[str, str] = {}
