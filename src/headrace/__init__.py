@@ -32,7 +32,7 @@ from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     from headrace.case import from_dict, read
-    from headrace.graph import load
+    from headrace.graph.load import load
     from headrace.run import ceiling, drains, grows, refills
 
 __version__ = "0.1.0"

@@ -9,6 +9,7 @@ from typing import Any
 import msgspec
 
 from headrace import case as cases
+from headrace.errors import InputError
 from headrace.hooks import brought
 from headrace.hooks.bench import Bench
 from headrace.hooks.manager import Manager
@@ -27,11 +28,13 @@ Progress = Callable[[str], None]
 
 
 class Desk:
-    """Facts and plugins, loaded once; answers any number of scenarios."""
+    """Facts and plugins, loaded once; answers any number of scenarios. Plugins and facts may be given, for tests."""
 
-    def __init__(self, *, cache: bool = True, strangers: bool = True) -> None:
-        self.plugins = Manager.load(strangers=strangers)
-        self.facts: Facts = brought.facts(self.plugins, cache=cache)
+    def __init__(
+        self, *, cache: bool = True, strangers: bool = True, plugins: Manager | None = None, facts: Facts | None = None
+    ) -> None:
+        self.plugins = Manager.load(strangers=strangers) if plugins is None else plugins
+        self.facts: Facts = brought.facts(self.plugins, cache=cache) if facts is None else facts
 
     def scenario(self, question: Question) -> Scenario:
         """A scenario from a path, TOML or JSON text, plain data, or as it is."""
@@ -40,8 +43,13 @@ class Desk:
         return cases.from_dict(question) if isinstance(question, dict) else cases.read(question)
 
     def case(self, question: Question, *, opened: bool = False, changes: Sequence[Change] = ()) -> Case:
-        """The scenario resolved against the facts. Raises InputError for what the facts do not know."""
-        return self.plugins.validated(cases.resolve(self.scenario(question), self.facts, opened=opened, changes=changes))
+        """The scenario resolved against the facts. Raises InputError for what the facts or the plugins do not know."""
+        scenario = self.scenario(question)
+        case = cases.resolve(scenario, self.facts, opened=opened, changes=changes)
+        try:
+            return self.plugins.validated(case)
+        except InputError as error:
+            raise cases.place(error, scenario.path, scenario.places) from None
 
     def drains(self, question: Question) -> Result:
         """What each outlet and growth take, per pool and in skeletons."""

@@ -1,6 +1,7 @@
 """A scenario file in, a `Case` out.
 
 read, from_dict      a file, a text or plain data: limits, syntax, keys, types and units, with lines for messages
+place                the file and line of an error that only knows its key
 resolve              names, edits, expression levels and amounts against the facts
 levels               the expression levels of rows under conditions
 schema               the JSON Schema of a scenario
@@ -8,10 +9,10 @@ outlet_number        which of a case's outlets a name means
 biomass              growth, as an outlet for drain plugins
 """
 
-from headrace.case.document import from_dict, read
+from headrace.case.document import from_dict, place, read
 from headrace.case.levels import Conditions, holds, levels
 from headrace.case.model import schema
 from headrace.case.outlets import biomass, outlet_number
 from headrace.case.resolve import resolve
 
-__all__ = ["Conditions", "biomass", "from_dict", "holds", "levels", "outlet_number", "read", "resolve", "schema"]
+__all__ = ["Conditions", "biomass", "from_dict", "holds", "levels", "outlet_number", "place", "read", "resolve", "schema"]
