@@ -1,0 +1,23 @@
+"""`headrace ceiling`"""
+
+from __future__ import annotations
+
+from typing import Annotated
+
+import typer
+
+from headrace.outputs.cli.shared import Format, FormatOption, ScenarioFile, answer
+
+Product = Annotated[
+    str, typer.Option("--outlet", metavar="PRODUCT", help="The outlet that is asked about; may be left out where there is one.")
+]
+
+
+def ceiling(scenario: ScenarioFile, outlet: Product = "", format: FormatOption = Format.table) -> int:
+    """The largest yields of one outlet side by side, and what binds."""
+    return answer(scenario, lambda desk, bar: desk.ceiling(scenario, outlet), format)
+
+
+def register(app: typer.Typer) -> None:
+    """Add the command."""
+    app.command()(ceiling)

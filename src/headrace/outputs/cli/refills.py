@@ -1,0 +1,21 @@
+"""`headrace refills`"""
+
+from __future__ import annotations
+
+from typing import Annotated
+
+import typer
+
+from headrace.outputs.cli.shared import Format, FormatOption, ScenarioFile, answer
+
+Rates = Annotated[bool, typer.Option("--rates", help="Add the rate of every reaction.")]
+
+
+def refills(scenario: ScenarioFile, format: FormatOption = Format.table, rates: Rates = False) -> int:
+    """What must be put back: ledger, requirement per refill and group, cost, cover, findings."""
+    return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say), format, rates)
+
+
+def register(app: typer.Typer) -> None:
+    """Add the command."""
+    app.command()(refills)

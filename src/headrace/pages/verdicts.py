@@ -1,0 +1,67 @@
+"""The answer in a sentence or two, before any table."""
+
+from __future__ import annotations
+
+from headrace.pages.context import RATE, Context
+from headrace.pages.numbers import joined, show
+from headrace.values.answers import CeilingAnswer, GroupRow, GrowsAnswer, RefillAnswer
+
+
+def refills(context: Context, answer: RefillAnswer) -> str:
+    """What is drained, what puts it back, and whether the design carries it."""
+    if answer.answer != "feasible":
+        return _impossible(context, answer)
+    book = answer.ledger
+    if book is None:
+        raise ValueError("a feasible answer has a ledger")
+    running = [row.label for row in answer.refills if row.open and row.nominal]
+    drained = f"The outlets drain {show(book.net_drain)} {RATE} of skeletons"
+    if book.refilled < 1e-9:
+        return f"{drained}; no refill has to run."
+    by = f" by {joined(running)}" if running else ""
+    return f"{drained}; {show(book.refilled)} must be put back{by}.{_necessary(answer.groups)}{_cover(answer)}"
+
+
+def _necessary(groups: tuple[GroupRow, ...]) -> str:
+    needed = [group.label for group in groups if group.necessary]
+    if not needed:
+        return " No single group is indispensable."
+    return f" The design can't do without {joined(needed)}."
+
+
+def _cover(answer: RefillAnswer) -> str:
+    if answer.design_cover is None:
+        return ""
+    enough = "carry it" if answer.design_cover >= 1 else "DO NOT carry it"
+    return f" The capacities {enough} (design cover {show(answer.design_cover)})."
+
+
+def _impossible(context: Context, answer: RefillAnswer) -> str:
+    short = [context.name(each.pool) for each in answer.shortage]
+    closed = [row.label for row in answer.refills if not row.open]
+    what = f": {joined(short)} can't be served" if short else ""
+    shut = f" {len(closed)} of {len(answer.refills)} refills are closed." if closed else ""
+    first = f" The smallest change that opens it: {answer.repairs[0].change}." if answer.repairs else ""
+    return f"No, this design can't run{what}.{shut}{first}"
+
+
+def ceiling(context: Context, answer: CeilingAnswer) -> str:
+    """The largest yield, and what the next ceiling above it would be."""
+    outlet, substrate = context.name(answer.outlet), context.compound(answer.substrate)
+    if answer.answer != "feasible" or answer.mol_per_mol is None:
+        return f"No: this design can't make {outlet} from {substrate}."
+    said = f"{outlet} from {substrate}: at most {show(answer.mol_per_mol)} mol/mol as expressed"
+    if answer.open_mol_per_mol is not None:
+        said += f", {show(answer.open_mol_per_mol)} with every gene of the host in use"
+    binding = f" What binds: {joined(list(answer.binding))}." if answer.binding else ""
+    return f"{said}.{binding}"
+
+
+def grows(context: Context, answer: GrowsAnswer) -> str:
+    """Yes with the largest rate, or no with what is missing."""
+    if answer.grows:
+        said = f"Yes: {context.host.label} grows, at most at {show(answer.rate)} /h at the stated feed."
+    else:
+        lacking = f": {joined([context.name(each) for each in answer.missing])} can't be served" if answer.missing else ""
+        said = f"No: {context.host.label} does not grow{lacking}."
+    return said + (" The verdict flips with the basal level." if answer.flips_with_basal else "")
