@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections import defaultdict
 from collections.abc import Callable, Iterator
+from functools import lru_cache
 from pathlib import Path
 from typing import Any, NamedTuple
 
@@ -23,10 +24,11 @@ from headrace.network.build import build
 from headrace.run import Desk
 from headrace.testing import closure
 from headrace.testing.compare import difference, plain, resorted
-from headrace.testing.renamed import renamed
+from headrace.testing.renamed import Renaming, renamed
 from headrace.testing.watch import Call, call, watched
 from headrace.values.answers import Result
 from headrace.values.case import Case, Finding
+from headrace.values.facts import Facts
 
 FACTOR = 3.0  # by which rates are scaled; exact in binary times small numbers, and no neighbour of 1
 
@@ -167,12 +169,11 @@ def _nameless(trial: Trial) -> Iterator[str]:
     hooks = set(hooks_of(trial.plugin)) & {"drains", "refills", "checks"}
     if not hooks:
         return
-    files = fact_files([paths.facts_folder()], trial.desk.plugins.fact_folders())
-    renaming = renamed(files)
+    renaming, facts = _under_other_names(tuple(trial.desk.plugins.fact_folders()))
     calls: list[Call] = []
     others = [entry for entry in FIRST_PARTY if entry.name != _name(trial)]
     manager = Manager(first_party=others, classes=[watched(trial.plugin, calls)])
-    desk = Desk(plugins=manager, facts=build_facts(renaming.files, version(renaming.files)))
+    desk = Desk(plugins=manager, facts=facts)
     desk.refills(renaming.scenario(desk.scenario(trial.plugin.example)))  # type: ignore[attr-defined]
     ours = [item for item in trial.calls if item.hook in hooks]
     theirs = [item for item in calls if item.hook in hooks]
@@ -182,6 +183,13 @@ def _nameless(trial: Trial) -> Iterator[str]:
         restored = resorted(renaming.undone(plain(other.answer)))
         if found := difference(resorted(plain(one.answer)), restored, one.hook):
             yield f"under other names: {found}"
+
+
+@lru_cache(maxsize=2)
+def _under_other_names(folders: tuple[tuple[str, Path], ...]) -> tuple[Renaming, Facts]:
+    """All facts with new slugs; kept, since plugins that bring no facts share them."""
+    renaming = renamed(fact_files([paths.facts_folder()], folders))
+    return renaming, build_facts(renaming.files, version(renaming.files))
 
 
 CHECKS: dict[str, Callable[[Trial], Iterator[str]]] = {
