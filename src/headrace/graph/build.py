@@ -53,6 +53,7 @@ def collect(graph: Graph, version: str) -> tuple[Facts | None, list[Fault]]:
         routes=_table(reader, terms.ROUTE, terms.ROUTE_BASE, route),
         sources=_table(reader, terms.DOCUMENT, terms.SOURCE_BASE, source),
         circumstances=_table(reader, terms.CIRCUMSTANCE, terms.CIRCUMSTANCE_BASE, _label),
+        implied=_implied(reader),
         units=_table(reader, terms.UNIT, terms.UNIT_BASE, _label),
         kinds=_kinds(reader),
         roles={slug: found for slug, found in roles.items() if found},
@@ -63,7 +64,7 @@ def collect(graph: Graph, version: str) -> tuple[Facts | None, list[Fault]]:
 
 def compound(entry: Entry, slug: str) -> Compound:
     """A chemical species with formula and charge."""
-    chebi = entry.iris(terms.CHEBI, CHEBI)
+    chebi = entry.iris(terms.CHEBI, CHEBI, "obo:CHEBI_16452")
     return Compound(
         slug=slug,
         label=entry.text(terms.LABEL),
@@ -103,7 +104,7 @@ def reaction(entry: Entry, slug: str, enzymes: Mapping[str, Enzyme]) -> Reaction
         terms=(*participants(entry, terms.TAKES, -1, transport), *participants(entry, terms.MAKES, 1, transport)),
         basis=entry.basis(),
         ec=_ec(entry),
-        rhea=entry.iris(terms.RHEA_ID, RHEA),
+        rhea=entry.iris(terms.RHEA_ID, RHEA, "rh:20844"),
         enzyme=catalyst,
         cofactors=tuple(sorted({*own, *shared})),
         lumped=entry.flag(terms.LUMPED),
@@ -195,6 +196,15 @@ def _kinds(reader: Reader) -> dict[str, str]:
     return {entry.slug(terms.KIND_BASE): entry.text(terms.LABEL) for entry in concepts}
 
 
+def _implied(reader: Reader) -> dict[str, str]:
+    """Circumstance -> the enzyme whose loss brings it about."""
+    told = {
+        entry.slug(terms.CIRCUMSTANCE_BASE): entry.ref(terms.IMPLIED_BY, terms.ENZYME_BASE, terms.ENZYME, required=False)
+        for entry in reader.entries(terms.CIRCUMSTANCE)
+    }
+    return {circumstance: enzyme for circumstance, enzyme in told.items() if enzyme}
+
+
 def _label(entry: Entry, slug: str) -> str:
     return entry.text(terms.LABEL)
 
@@ -204,7 +214,7 @@ def _ec(entry: Entry) -> tuple[str, ...]:
     for number in partial:
         if not EC_CLASS.fullmatch(number):
             entry.fault("wrong-identifier", f"hr:ecClass reads {number!r}; accepted: such as 1.1.1.-")
-    return (*entry.iris(terms.EC, EC), *partial)
+    return (*entry.iris(terms.EC, EC, "ec:6.4.1.1"), *partial)
 
 
 def _below_a_host(reader: Reader) -> None:

@@ -94,7 +94,7 @@ class Entry:
             if isinstance(node, BlankNode):
                 found.append(Entry(self.reader, self.node, self.reader.graph.about[node]))
             else:
-                self.fault("wrong-datatype", f"{short(predicate)} wants [ … ], reads {node}")
+                self.fault("wrong-datatype", f"{short(predicate)} wants [ … ], reads {_shown(node)}")
         return found
 
     def refs(self, predicate: str, base: str, kind: str) -> tuple[str, ...]:
@@ -102,7 +102,7 @@ class Entry:
         found = []
         for node in self.says.get(predicate, ()):
             if not isinstance(node, NamedNode):
-                self.fault("wrong-datatype", f"{short(predicate)} wants the address of a {short(kind)}, reads {node}")
+                self.fault("wrong-datatype", f"{short(predicate)} wants the address of a {short(kind)}, reads {_shown(node)}")
             elif not node.value.startswith(base) or not self.reader.is_a(node.value, kind):
                 self.fault("unknown-reference", f"{short(predicate)} names {short(node.value)}: no such {short(kind)}")
             else:
@@ -114,13 +114,13 @@ class Entry:
         found = self.refs(predicate, base, kind)
         return self._one(predicate, found, required and len(self.reader.faults) == before) or ""
 
-    def iris(self, predicate: str, pattern: re.Pattern[str]) -> tuple[str, ...]:
+    def iris(self, predicate: str, pattern: re.Pattern[str], example: str) -> tuple[str, ...]:
         """The first group of `pattern` for each outside address (ChEBI, EC, Rhea ...), sorted."""
         found = []
         for node in self.says.get(predicate, ()):
             match = pattern.fullmatch(node.value) if isinstance(node, NamedNode) else None
             if match is None:
-                self.fault("wrong-identifier", f"{short(predicate)} reads {node}: not of the form {pattern.pattern}")
+                self.fault("wrong-identifier", f"{short(predicate)} reads {_shown(node)}; accepted: such as {example}")
             else:
                 found.append(match[1])
         return tuple(sorted(found))
@@ -131,7 +131,7 @@ class Entry:
         if node is None:
             return None
         if node.datatype.value not in (terms.INTEGER, terms.DECIMAL) or not _NUMBER.fullmatch(node.value):
-            self.fault("wrong-datatype", f"{short(predicate)} wants a number such as 1.5, reads {node}")
+            self.fault("wrong-datatype", f"{short(predicate)} wants a number such as 1.5, reads {_shown(node)}")
             return None
         return Fraction(node.value)
 
@@ -150,7 +150,7 @@ class Entry:
         """True when stated so; false when not stated (facts state a flag only when it is true)."""
         node = self._literal_node(predicate, required=False)
         if node is not None and (node.datatype.value != terms.BOOLEAN or node.value not in ("true", "false")):
-            self.fault("wrong-datatype", f"{short(predicate)} wants true, reads {node}")
+            self.fault("wrong-datatype", f"{short(predicate)} wants true, reads {_shown(node)}")
         return node is not None and node.value == "true"
 
     def word(self, predicate: str, allowed: Sequence[str], required: bool = True) -> str:
@@ -204,4 +204,8 @@ class Entry:
 
 
 def _shown(node: object) -> str:
-    return short(node.value) if isinstance(node, NamedNode) else str(node)
+    """A node as a message shows it: short address, bare number, text in quotes."""
+    if isinstance(node, NamedNode):
+        return short(node.value)
+    bare = isinstance(node, Literal) and node.datatype.value in (terms.INTEGER, terms.DECIMAL, terms.BOOLEAN)
+    return node.value if bare else str(node)

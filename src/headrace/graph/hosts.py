@@ -40,7 +40,7 @@ def host(entry: Entry, slug: str, reactions: Mapping[str, Reaction]) -> Host:
     local = _Local(entry, own)
     compartments = tuple(compartment(part, own) for part in local.entries(terms.COMPARTMENT))
     _one_of_each(entry, compartments)
-    taxon = entry.iris(terms.TAXON, TAXON)
+    taxon = entry.iris(terms.TAXON, TAXON, "obo:NCBITaxon_562")
     if not entry.says.get(terms.TAXON):
         entry.fault("missing-part", "has no hr:taxon")
     return Host(

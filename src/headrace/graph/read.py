@@ -53,7 +53,9 @@ class Graph:
         for quad in said:
             if isinstance(quad.subject, Triple) or isinstance(quad.object, Triple):
                 raise FactsError(f"statements about statements are not read: {quad}", file=file)
-            self.about[quad.subject][quad.predicate.value].append(quad.object)
+            values = self.about[quad.subject][quad.predicate.value]
+            if quad.object not in values:  # the same statement in two files is one
+                values.append(quad.object)
             if isinstance(quad.subject, NamedNode):
                 self._note(quad.subject.value, quad, file)
 

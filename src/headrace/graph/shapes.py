@@ -41,6 +41,7 @@ def broken_shapes(shapes: Path, files: Sequence[FactFile], graph: Graph) -> Iter
 def _fault(result: Any, graph: Graph) -> Fault:
     node = result.focus_node.removeprefix("<").removesuffix(">")
     path = plain((result.path or "").replace("<", "").replace(">", ""))
-    value = f", reads {short(result.value_plain)}" if result.value_plain else ""
-    said = result.message or result.component.removesuffix("ConstraintComponent")
-    return Fault("shape", short(node), f"{path} {said}{value}".strip(), graph.file_of(node))
+    read = result.value_plain if result.value_plain and not (result.value or "").startswith("_:") else ""
+    said = result.message or f"breaks sh:{result.component.removesuffix('ConstraintComponent')}"
+    message = f"{path}: {said}" if path else said
+    return Fault("shape", short(node), f"{message}, reads {short(read)}" if read else message, graph.file_of(node))

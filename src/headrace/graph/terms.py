@@ -156,6 +156,7 @@ SUPPLIED_WITHOUT = HR + "suppliedWithout"
 REMOVED_REGULATOR = HR + "removedRegulator"
 REMOVED_ENZYME = HR + "removedEnzyme"
 HAS_CIRCUMSTANCE = HR + "circumstance"
+IMPLIED_BY = HR + "impliedBy"
 
 # Properties of numbers
 ABOUT = HR + "about"
