@@ -83,7 +83,13 @@ def test_old_files_are_forgotten_but_not_strangers(folder: Path, built: Facts) -
         old = folder / f"facts-{age:012d}-x.msgpack"
         old.write_bytes(b"")
         os.utime(old, (time.time() - 1000 * age,) * 2)
+    left = folder / "facts-1-1.part"
+    left.write_bytes(b"half")
+    os.utime(left, (time.time() - 2 * cache.STALE,) * 2)
+    being_written = folder / "facts-2-2.part"
+    being_written.write_bytes(b"half")
     assert cache.write(folder, built)
+    assert not left.exists() and being_written.exists()
     kept = only_facts(folder)
     assert len(kept) == cache.KEPT and newest in kept and (folder / "facts-000000000001-x.msgpack") in kept
     assert (folder / "notes.txt").read_text() == "mine"

@@ -7,9 +7,10 @@ that is short, altered or of another shape is ignored and built again.
 
 from __future__ import annotations
 
+import gc
 import hashlib
 import os
-import tempfile
+import time
 from fractions import Fraction
 from functools import cache
 from pathlib import Path
@@ -21,6 +22,7 @@ from headrace.values import codec
 from headrace.values.facts import Facts
 
 KEPT = 6
+STALE = 3600.0  # seconds
 _DIGEST = hashlib.sha256().digest_size
 
 
@@ -33,10 +35,15 @@ def read(folder: Path, version: str) -> Facts | None:
     digest, body = data[:_DIGEST], memoryview(data)[_DIGEST:]
     if hashlib.sha256(body).digest() != digest:
         return None
+    collecting = gc.isenabled()
+    gc.disable()  # decoding makes many objects and no garbage; looking for some doubles its time
     try:
         facts = msgspec.msgpack.decode(body, type=Facts, dec_hook=_decode)
     except msgspec.MsgspecError:
         return None
+    finally:
+        if collecting:
+            gc.enable()
     return facts if facts.version == version else None
 
 
@@ -45,13 +52,13 @@ def write(folder: Path, facts: Facts) -> bool:
     body = msgspec.msgpack.encode(facts, enc_hook=codec.encode_hook)
     try:
         folder.mkdir(parents=True, exist_ok=True)
-        handle, name = tempfile.mkstemp(prefix="facts-", suffix=".part", dir=folder)
+        part = folder / f"facts-{os.getpid()}-{time.monotonic_ns()}.part"
         try:
-            with os.fdopen(handle, "wb") as stream:
+            with part.open("xb") as stream:
                 stream.write(hashlib.sha256(body).digest() + body)
-            os.replace(name, _file(folder, facts.version))
+            os.replace(part, _file(folder, facts.version))
         except BaseException:
-            Path(name).unlink(missing_ok=True)
+            part.unlink(missing_ok=True)
             raise
         _forget_old(folder)
     except OSError:
@@ -84,13 +91,16 @@ def _file(folder: Path, version: str) -> Path:
 
 
 def _forget_old(folder: Path) -> None:
-    """Keep the newest few files; a process that loses its file builds again."""
-
-    def age(path: Path) -> float:
-        try:
-            return -path.stat().st_mtime
-        except FileNotFoundError:
-            return 0.0
-
-    for path in sorted(folder.glob("facts-*.msgpack"), key=age)[KEPT:]:
+    """Keep the newest few files; a process that loses its file builds again. Parts that a killed process left go too."""
+    for path in sorted(folder.glob("facts-*.msgpack"), key=_written, reverse=True)[KEPT:]:
         path.unlink(missing_ok=True)
+    for path in folder.glob("facts-*.part"):
+        if _written(path) < time.time() - STALE:
+            path.unlink(missing_ok=True)
+
+
+def _written(path: Path) -> float:
+    try:
+        return path.stat().st_mtime
+    except FileNotFoundError:
+        return 0.0

@@ -8,6 +8,7 @@ so that checkouts with other line endings, installed wheels and any file order g
 from __future__ import annotations
 
 import hashlib
+import os
 from collections.abc import Iterable, Sequence
 from pathlib import Path
 from typing import NamedTuple
@@ -43,10 +44,13 @@ def turtle_paths(folder: Path, skipped: Sequence[str] = NOT_FACTS) -> Iterable[t
     """(relative name, path) of each Turtle file below `folder`, but for the skipped folders and hidden ones."""
     if not folder.is_dir():
         raise FactsError("no such folder of facts", file=folder)
-    for path in sorted(folder.rglob("*.ttl")):
-        parts = path.relative_to(folder).parts
-        if parts[0] not in skipped and not any(part.startswith(".") for part in parts):
-            yield "/".join(parts), path
+    for inside, folders, names in os.walk(folder):
+        here = Path(inside)
+        parts = here.relative_to(folder).parts
+        folders[:] = sorted(name for name in folders if not name.startswith(".") and (parts or name not in skipped))
+        for name in sorted(names):
+            if name.endswith(".ttl") and not name.startswith("."):
+                yield "/".join([*parts, name]), here / name
 
 
 def normalised(path: Path) -> bytes:
