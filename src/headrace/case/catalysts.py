@@ -93,7 +93,7 @@ class Catalysts:
         words = name.split()
         for start in range(len(words) if describing else 1):
             rest, before = " ".join(words[start:]), " ".join(words[:start])
-            if found := self._named(rest):
+            if found := self._named(rest, describing):
                 return Phrase(text, *found, place, direction, _affirmed(text, before))
         return Phrase(text, None, False, place, direction)
 
@@ -141,14 +141,20 @@ class Catalysts:
         enzyme = self.facts.enzymes.get(reaction.enzyme)
         return entity.kind == "ec" and entity.slug in {*reaction.ec, *(enzyme.ec if enzyme else ())}
 
-    def _named(self, text: str) -> tuple[Entity, bool] | None:
-        """The entity of a name and whether it is the host's own; whole names go before stems."""
-        for own, index in ((True, self.own), (False, self.foreign)):
-            if entity := self._one(index, text):
-                return entity, own
+    def _named(self, text: str, foreign_first: bool) -> tuple[Entity, bool] | None:
+        """The entity of a name, and whether it is the host's own.
+
+        The host's names go first, then, by choice, a whole name among all facts or a stem among the host's enzymes.
+        """
+        if entity := self._one(self.own, text):
+            return entity, True
         mine = {self.facts.reactions[row.reaction].enzyme for row in self.host.reactions}
         variants = self._variants(text)
-        if chosen := [slug for slug in variants if slug in mine]:
+        chosen = [slug for slug in variants if slug in mine]
+        whole = self._one(self.foreign, text) if foreign_first or not chosen else None
+        if whole is not None:
+            return whole, False
+        if chosen:
             return Entity("enzyme", ",".join(chosen)), True
         if len(variants) > 1:
             words = f"{text!r} can mean several enzymes"

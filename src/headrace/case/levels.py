@@ -20,6 +20,7 @@ _ORDER = {"off": 0, "basal": 1, "on": 2}
 class Conditions(Struct, frozen=True):
     """What expression depends on. oxygen: present | absent. fed: substrates; supplied: these and supplements.
 
+    implied: circumstances that a removed enzyme brings about; a rule that needs one is *fitted* in this case.
     removed: gene symbols. unruled: rules whose conditions are switched off, so that they hold always.
     """
 
@@ -27,6 +28,7 @@ class Conditions(Struct, frozen=True):
     supplied: frozenset[str]
     oxygen: str = "present"
     circumstances: frozenset[str] = frozenset()
+    implied: frozenset[str] = frozenset()
     removed: frozenset[str] = frozenset()
     unruled: frozenset[str] = frozenset()
 
@@ -44,9 +46,14 @@ def holds(rule: Expression, under: Conditions) -> bool:
             under.supplied.isdisjoint(rule.supplied_without),
             not rule.removed_regulators or not under.removed.isdisjoint(rule.removed_regulators),
             not rule.removed_enzymes or not under.removed.isdisjoint(rule.removed_enzymes),
-            not rule.circumstances or not under.circumstances.isdisjoint(rule.circumstances),
+            not rule.circumstances or not (under.circumstances | under.implied).isdisjoint(rule.circumstances),
         )
     )
+
+
+def is_fitted(rule: Expression, under: Conditions) -> bool:
+    """Whether a rule that holds does so only because an enzyme is gone."""
+    return rule.fitted or bool(rule.circumstances) and under.circumstances.isdisjoint(rule.circumstances)
 
 
 def is_removed(row: HostReaction, genes: frozenset[str]) -> bool:
@@ -77,7 +84,7 @@ def level(
         return Level("off", "not-expressed", _unmet(named), tuple(rule.slug for rule in named))
     best = max((rule.level for rule in held), key=_ORDER.__getitem__)
     deciding = [rule for rule in held if rule.level == best]
-    free = [rule for rule in deciding if not rule.fitted]
+    free = [rule for rule in deciding if not is_fitted(rule, under)]
     chosen = free or deciding
     reason = "; or ".join(rule.label for rule in chosen)
     return Level(best, "expressed", reason, tuple(rule.slug for rule in chosen), fitted=not free)

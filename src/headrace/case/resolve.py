@@ -10,7 +10,7 @@ from msgspec import UNSET
 from headrace import units
 from headrace.case.catalysts import Catalysts
 from headrace.case.energy import energy
-from headrace.case.levels import Conditions, levels
+from headrace.case.levels import Conditions, is_removed, levels
 from headrace.case.medium import Medium, medium
 from headrace.case.model import Document
 from headrace.case.outlets import Growth, demands, growth
@@ -91,6 +91,7 @@ def _levels(
         supplied=fed | {extra.compound for extra in around.supplements},
         oxygen=around.oxygen_state,
         circumstances=frozenset(around.circumstances),
+        implied=_implied(sheet, gone),
         removed=gone.genes,
         unruled=_unruled(sheet, changes),
     )
@@ -114,6 +115,16 @@ def _levels(
                 else Level("off", "removed", "closed")
             )
     return found
+
+
+def _implied(sheet: Sheet, gone: Removal) -> frozenset[str]:
+    """Circumstances brought about by an enzyme of which the host keeps no row."""
+    found = set()
+    for circumstance, enzyme in sheet.facts.implied.items():
+        own = [row for row in sheet.host.reactions if sheet.facts.reactions[row.reaction].enzyme == enzyme]
+        if own and all(row.slug in gone.rows or is_removed(row, gone.genes) for row in own):
+            found.add(circumstance)
+    return frozenset(found)
 
 
 def _unruled(sheet: Sheet, changes: Sequence[Change]) -> frozenset[str]:
