@@ -49,7 +49,7 @@ def side_by_side(answer: CeilingAnswer) -> Table:
         ("carbon alone, with CO2", answer.carbon_ceiling_with_co2_mol_per_mol, "ATP and electrons free, CO2 may enter"),
     )
     rows = tuple((name, *_in_units(answer, value), assumes) for name, value, assumes in given)
-    return Table("ceilings", "Largest yields side by side", columns, rows, note=answer.co2_rule)
+    return Table("ceilings", f"Largest yields of {answer.outlet} side by side", columns, rows, note=answer.co2_rule)
 
 
 def _in_units(answer: CeilingAnswer, value: float | None) -> tuple[Cell, ...]:

@@ -8,8 +8,8 @@ from headrace.values.answers import Result
 from headrace.values.case import Demand
 from headrace.values.facts import Host
 
-LOWER_BOUND = "a stoichiometric requirement is a lower bound from a model, not a measurement."
-RECALLED_CAUTION = "recalled facts are marked, and are to be confirmed before a decision rests on them."
+LOWER_BOUND = "A stoichiometric requirement is a lower bound from a model, not a measurement."
+RECALLED_CAUTION = "Recalled facts are marked, and are to be confirmed before a decision rests on them."
 RATE = "mmol/gDW/h"
 CARBON = "mmol C/gDW/h"
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from headrace.pages.context import RATE, Context
-from headrace.pages.model import Block, Cell, Column, Notes, Table
+from headrace.pages.model import Block, Column, Notes, Row, Table
 from headrace.pages.numbers import show
 from headrace.values.answers import Ledger
 
@@ -44,9 +44,9 @@ def compartments(context: Context, ledger: Ledger) -> Table:
     """The same law in each compartment, with what carriers bring in and out."""
     kinds = ("drained", "released", "removed", "carried out", "refilled", "supplied", "carried in", "residual")
     places = ledger.compartments
-    columns = (Column("in each compartment"), *(Column(context.place(each.compartment), RATE, number=True) for each in places))
-    cells: list[tuple[Cell, ...]] = []
-    for kind in kinds:
-        values = tuple(getattr(each, kind.replace(" ", "_")) for each in places)
-        cells.append((f"{'+' if kind in kinds[4:7] else '-' if kind != 'residual' else '='} {kind}", *values))
-    return Table("compartments", "Ledger by compartment", columns, tuple(cells))
+    columns = (Column("side"), Column("kind"), *(Column(context.place(each.compartment), RATE, number=True) for each in places))
+    sides = ("leaves",) * 4 + ("comes in",) * 3 + ("difference",)
+    cells: list[Row] = []
+    for side, kind in zip(sides, kinds, strict=True):
+        cells.append((side, kind, *(getattr(each, kind.replace(" ", "_")) for each in places)))
+    return Table("compartments", "Ledger by compartment", columns, tuple(cells), grouped=True)

@@ -48,11 +48,10 @@ def block(each: Block, level: int = 2) -> Iterator[str]:
     elif isinstance(each, Verbatim):
         yield from _fenced(each.text)
     else:
-        bullet = "- " if each.listed else ""
-        for line in each.lines:
-            yield f"{bullet}{escape(line)}"
-            if not each.listed:
+        for place, line in enumerate(each.lines):
+            if place and not each.listed:
                 yield ""
+            yield f"{'- ' if each.listed else ''}{escape(line)}"
     yield ""
 
 
@@ -82,8 +81,9 @@ def _row(cells: Iterator[str]) -> str:
 
 
 def escape(text: str) -> str:
-    """Text that Markdown leaves as it is: no pipes that split cells, no stars, underscores, angle brackets or backticks
-    that format, no line breaks."""
-    for mark in "\\|*_`<>#":
+    """Text that Markdown leaves as it is: no pipes that split cells, no stars, underscores, tags or backticks that
+    format, no headings or quotes, no line breaks."""
+    for mark in "\\|*_`<":
         text = text.replace(mark, f"\\{mark}")
-    return " ".join(text.split())
+    text = " ".join(text.split())
+    return f"\\{text}" if text.startswith(("#", ">")) else text

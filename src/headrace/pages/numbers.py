@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from fractions import Fraction
 
 from headrace.pages.model import Cell
 
@@ -38,18 +39,17 @@ def show(value: Cell) -> str:
 
 
 def full(value: Cell) -> str:
-    """A cell with all its digits, for CSV; None as an empty cell, exact fractions as "3/2".
+    """A cell with all its digits, for CSV; None as an empty cell. (A fraction as "3/2" would be a date to spreadsheets.)
 
-    >>> from fractions import Fraction
     >>> [full(x) for x in (0.1, Fraction(3, 2), None, False, -0.0)]
-    ['0.1', '3/2', '', 'no', '0.0']
+    ['0.1', '1.5', '', 'no', '0.0']
     """
     if value is None:
         return ""
     if isinstance(value, bool):
         return "yes" if value else "no"
-    if isinstance(value, float):
-        return repr(value + 0.0)
+    if isinstance(value, float | Fraction):
+        return repr(float(value) + 0.0)
     return str(value)
 
 

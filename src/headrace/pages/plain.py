@@ -27,7 +27,7 @@ def page(page: Page, width: int = 100) -> str:
     for note in page.footnotes:
         lines += wrap(note, width)
     for caution in page.cautions:
-        lines += wrap(f"Caution: {caution}", width, subsequent_indent=_INDENT)
+        lines += wrap(f"Caution: {caution[:1].lower()}{caution[1:]}", width, subsequent_indent=_INDENT)
     if page.sources and page.list_sources:
         lines += _sources(page.sources, width)
     elif page.sources:

@@ -48,8 +48,7 @@ def blocks(context: Context, answer: RefillAnswer, with_findings: bool = True) -
     return (
         *stuck,
         *book,
-        groups(context, answer),
-        requirement(context, answer),
+        *((groups(context, answer), requirement(context, answer)) if solved else ()),
         closed(context, answer),
         *(flows if solved else ()),
         *(findings(context) if with_findings else ()),

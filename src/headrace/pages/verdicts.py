@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from headrace.pages.context import RATE, Context
 from headrace.pages.numbers import joined, show
-from headrace.values.answers import CeilingAnswer, GroupRow, GrowsAnswer, RefillAnswer
+from headrace.values.answers import CeilingAnswer, GroupRow, GrowsAnswer, Ledger, RefillAnswer
 
 
 def refills(context: Context, answer: RefillAnswer) -> str:
@@ -14,12 +14,24 @@ def refills(context: Context, answer: RefillAnswer) -> str:
     book = answer.ledger
     if book is None:
         raise ValueError("a feasible answer has a ledger")
-    running = [row.label for row in answer.refills if row.open and row.nominal]
-    drained = f"The outlets drain {show(book.net_drain)} {RATE} of skeletons"
+    by = [row.label for row in answer.refills if row.open and row.nominal is not None and row.nominal > 1e-9]
+    by = by or [group.label for group in answer.groups if group.nominal is not None and group.nominal > 1e-9]
+    drained = f"{_drainers(context)} {show(book.net_drain)} {RATE} of skeletons{_also(book)}"
     if book.refilled < 1e-9:
         return f"{drained}; no refill has to run."
-    by = f" by {joined(running)}" if running else ""
-    return f"{drained}; {show(book.refilled)} must be put back{by}.{_necessary(answer.groups)}{_cover(answer)}"
+    return f"{drained}; {show(book.refilled)} must be put back by {joined(by)}.{_necessary(answer.groups)}{_cover(answer)}"
+
+
+def _drainers(context: Context) -> str:
+    grows = context.case.growth is None or context.case.growth > 0
+    return "Outlets and growth drain" if grows and context.case.demands else "Growth drains" if grows else "The outlets drain"
+
+
+def _also(book: Ledger) -> str:
+    """What else moves skeletons, in words."""
+    moved = (("released as by-products", book.released), ("removed", book.removed), ("supplied by feeds", book.supplied))
+    said = [f"{show(amount)} are {what}" for what, amount in moved if amount > 1e-9]
+    return f" ({joined(said)})" if said else ""
 
 
 def _necessary(groups: tuple[GroupRow, ...]) -> str:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from headrace.pages.context import RATE, Context
 from headrace.pages.model import Cell, Column, Table
-from headrace.pages.numbers import joined, show
+from headrace.pages.numbers import counted, joined, show
 from headrace.values.answers import RefillAnswer
 from headrace.values.case import Case
 from headrace.values.facts import Basis, Quantity
@@ -116,7 +116,7 @@ def _composition(context: Context) -> list[Row]:
         return []
     borrowed = context.facts.hosts.get(host.composition_borrowed_from)
     origin = f"borrowed from {borrowed.label}" if borrowed else joined(sorted({part.origin for part in host.composition}))
-    value = f"{len(host.composition)} building blocks"
+    value = counted(len(host.composition), "building block")
     return [("biomass composition", value, "mmol/gDW", origin, *_bases(context, [part.basis for part in host.composition]))]
 
 

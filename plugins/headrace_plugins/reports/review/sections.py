@@ -14,7 +14,7 @@ from headrace.values.answers import Result
 from headrace_plugins.reports.review.assumptions import assumptions
 
 BIOSAFETY = (
-    "building and handling engineered organisms is subject to local biosafety rules and to review by the responsible body."
+    "Building and handling engineered organisms is subject to local biosafety rules and to review by the responsible body."
 )
 
 

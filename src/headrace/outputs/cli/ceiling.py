@@ -14,7 +14,7 @@ Product = Annotated[
 
 
 def ceiling(scenario: ScenarioFile, outlet: Product = "", format: FormatOption = Format.table) -> int:
-    """The largest yields of one outlet side by side, and what binds."""
+    """The largest yields of an outlet, and what binds."""
     return answer(scenario, lambda desk, bar: desk.ceiling(scenario, outlet), format)
 
 

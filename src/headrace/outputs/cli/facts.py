@@ -27,7 +27,10 @@ Wanted = Annotated[
 
 
 def check(format: FormatOption = Format.table) -> int:
-    """Prove that the facts hold: shapes, balance, bases, rules, nothing from nothing."""
+    """Prove that the facts hold.
+
+    Shapes, balance of every element and charge, bases, rules, canonical form, nothing from nothing.
+    """
     from headrace.graph.check import check  # this command alone pays for the shapes and rules
     from headrace.hooks.manager import Manager  # as above
     from headrace.outputs.facts import listing, proofs  # as above

@@ -8,7 +8,7 @@ from headrace.outputs.cli.shared import Format, FormatOption, ScenarioFile, answ
 
 
 def grows(scenario: ScenarioFile, format: FormatOption = Format.table) -> int:
-    """Whether the strain grows on the medium; if not, what is missing and what would help."""
+    """Whether the strain grows on the medium, or why not."""
     return answer(scenario, lambda desk, bar: desk.grows(scenario), format)
 
 

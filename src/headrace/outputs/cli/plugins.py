@@ -16,7 +16,7 @@ if TYPE_CHECKING:
 
 
 def plugins(format: FormatOption = Format.table) -> int:
-    """What is loaded, from where and with which hooks; what is not used, and why."""
+    """What is loaded, from where and with which hooks."""
     from headrace.hooks.manager import Manager  # the other commands come to it through the core
 
     manager = Manager.load()

@@ -12,7 +12,10 @@ Rates = Annotated[bool, typer.Option("--rates", help="Add the rate of every reac
 
 
 def refills(scenario: ScenarioFile, format: FormatOption = Format.table, rates: Rates = False) -> int:
-    """What must be put back: ledger, requirement per refill and group, cost, cover, findings."""
+    """What must be put back, by which refill, at what cost.
+
+    Ledger, requirement per refill and group, closed refills, cost, cover, findings.
+    """
     return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say), format, rates)
 
 

@@ -27,7 +27,10 @@ Force = Annotated[bool, typer.Option("--force", help="Also replace files that He
 
 
 def review(scenarios: Scenarios, output: Folder, force: Force = False) -> int:
-    """The design-review documents: Markdown with all tables, and the tables as CSV."""
+    """The design-review documents.
+
+    Markdown with all tables, and the tables as CSV files.
+    """
     desk = shared.desk()
     with working("review", len(scenarios)) as bar:
         asked = [desk.scenario(path) for path in scenarios]  # all are read before any is worked on
