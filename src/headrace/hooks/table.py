@@ -21,4 +21,12 @@ FIRST_PARTY: tuple[Entry, ...] = (
         hooks=("refills",),
         families=(),
     ),
+    Entry(
+        name="review",
+        module="headrace_plugins.reports.review",
+        attribute="Review",
+        summary="the design-review document as Markdown, with its tables as CSV",
+        hooks=("report",),
+        families=(),
+    ),
 )
