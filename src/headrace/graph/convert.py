@@ -207,5 +207,6 @@ def _shown(node: object) -> str:
     """A node as a message shows it: short address, bare number, text in quotes."""
     if isinstance(node, NamedNode):
         return short(node.value)
-    bare = isinstance(node, Literal) and node.datatype.value in (terms.INTEGER, terms.DECIMAL, terms.BOOLEAN)
-    return node.value if bare else str(node)
+    if isinstance(node, Literal) and node.datatype.value in (terms.INTEGER, terms.DECIMAL, terms.BOOLEAN):
+        return node.value
+    return str(node)

@@ -204,6 +204,7 @@ DERIVED_FROM = PROV + "wasDerivedFrom"
 GENERATED_BY = PROV + "wasGeneratedBy"
 ENTITY = PROV + "Entity"
 ACTIVITY = PROV + "Activity"
+USED = PROV + "used"
 ASSOCIATED_WITH = PROV + "wasAssociatedWith"
 VERSION = DCTERMS + "hasVersion"
 

@@ -166,7 +166,10 @@ def _gist(says: dict[str, list[Node]]) -> str:
 
 
 def _names(about: dict[NamedNode | BlankNode, dict[str, list[Node]]]) -> dict[str, str]:
-    """Prefixes to use: the table of terms, ":" for the file's own host, a host's slug for any other host."""
+    """Prefixes to use: the table of terms, ":" for the host that the statements are about, a host's slug for others.
+
+    Where several hosts are described (a whole dataset) all go by their slugs.
+    """
     subjects = (node.value for node in about if isinstance(node, NamedNode))
     own = sorted({match[1] for iri in subjects if (match := _HOST_LOCAL.match(iri))})
     others: set[str] = set()
@@ -176,7 +179,7 @@ def _names(about: dict[NamedNode | BlankNode, dict[str, list[Node]]]) -> dict[st
                 if match := _HOST_LOCAL.match(iri):
                     others.add(match[1])
     hosts = own + sorted(others - set(own))
-    local = {("" if place == 0 else host): f"{terms.HOST_BASE}{host}/" for place, host in enumerate(hosts)}
+    local = {("" if own == [host] else host): f"{terms.HOST_BASE}{host}/" for host in hosts}
     return local | terms.PREFIXES
 
 

@@ -264,7 +264,7 @@ class Facts(Struct, frozen=True):
     (graph_data/ontology/roles.ttl), role slug -> entity slugs: energy-release (reaction), oxygen, carbon-dioxide,
     inorganic-carbon, water, proton, motive-proton, ammonium; for route vectors also mineral, peroxide, one-carbon,
     one-carbon-carrier, adenylate, acyl-carrier, by-product. electron_pairs: reduced carrier -> oxidised carrier.
-    kinds: the label of each kind of quantity.
+    kinds: the label of each kind of quantity. implied: circumstance -> enzyme whose removal brings it about.
     """
 
     version: str
@@ -278,6 +278,7 @@ class Facts(Struct, frozen=True):
     circumstances: dict[str, str]
     units: dict[str, str]
     kinds: dict[str, str] = {}
+    implied: dict[str, str] = {}
     contents: dict[str, Fraction] = {}
     roles: dict[str, tuple[str, ...]] = {}
     electron_pairs: dict[str, str] = {}
