@@ -68,8 +68,8 @@ def to_rdflib(
     for prefix, base in terms.PREFIXES.items():
         target.bind(prefix, base)
     for quad in dataset(folders, extra, derived=derived):
-        named = isinstance(quad.graph_name, NamedNode)
-        graph = rdflib.URIRef(quad.graph_name.value) if named else DATASET_DEFAULT_GRAPH_ID
+        name = quad.graph_name
+        graph = rdflib.URIRef(name.value) if isinstance(name, NamedNode) else DATASET_DEFAULT_GRAPH_ID
         target.graph(graph).add(tuple(_rdflib_term(rdflib, term) for term in (quad.subject, quad.predicate, quad.object)))
     return target
 

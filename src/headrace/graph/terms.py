@@ -28,6 +28,10 @@ CIRCUMSTANCE_BASE = ID + "circumstance/"
 HOST_BASE = ID + "host/"
 ROLE_BASE = ID + "role/"
 EXCEPTION_BASE = ID + "exception/"
+NUMBER_BASE = ID + "number/"
+EFFECT_BASE = ID + "effect/"
+VITAMIN_BASE = ID + "vitamin/"
+SUPPLY_BASE = ID + "supply/"
 DERIVED_GRAPH = ID + "graph/derived"
 FACTS_GRAPH = ID + "graph/facts"
 
@@ -40,10 +44,12 @@ PREFIXES: dict[str, str] = {
     "dcterms": DCTERMS,
     "e": ENZYME_BASE,
     "ec": UNIPROT_ENZYME,
+    "effect": EFFECT_BASE,
     "except": EXCEPTION_BASE,
     "h": HOST_BASE,
     "hr": HR,
     "k": KIND_BASE,
+    "n": NUMBER_BASE,
     "o": OUTLET_BASE,
     "obo": OBO,
     "owl": "http://www.w3.org/2002/07/owl#",
@@ -59,7 +65,9 @@ PREFIXES: dict[str, str] = {
     "sd": "http://www.w3.org/ns/sparql-service-description#",
     "sh": "http://www.w3.org/ns/shacl#",
     "skos": SKOS,
+    "supply": SUPPLY_BASE,
     "unit": UNIT_BASE,
+    "vitamin": VITAMIN_BASE,
     "void": "http://rdfs.org/ns/void#",
     "xsd": XSD,
 }
