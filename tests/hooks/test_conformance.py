@@ -178,6 +178,17 @@ def test_facts_that_do_not_balance_are_caught(right: Any, tmp_path: Path) -> Non
     assert "its facts can't be used" in complaint(Unbalanced)
 
 
+def test_facts_that_are_not_in_canonical_form_are_caught(right: Any, tmp_path: Path) -> None:
+    text = (Path(right.facts(right())) / "hydroxyglutarate.ttl").read_text()
+    (tmp_path / "hydroxyglutarate.ttl").write_text(text.replace(" ;\n", ";\n", 1))
+
+    class Untidy(right):  # type: ignore[misc]
+        def facts(self) -> Path:
+            return tmp_path
+
+    assert "declaration and facts: plugin/hydroxyglutarate/hydroxyglutarate.ttl" in complaint(Untidy)
+
+
 def test_an_unmet_need_is_caught(right: Any) -> None:
     class Needy(right):  # type: ignore[misc]
         facts_needed = ("reactions/unobtainable",)

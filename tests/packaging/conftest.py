@@ -54,5 +54,5 @@ def answers(clean: Clean) -> Answers:
 @pytest.fixture(scope="session")
 def beside_a_stranger(clean: Clean, answers: Answers, tmp_path_factory: pytest.TempPathFactory) -> Clean:
     """The same environment after the example plugin was built as its own wheel and installed."""
-    clean.install("pytest", wheel(ROOT / "examples" / "plugin", tmp_path_factory.mktemp("stranger")))
+    clean.install("pytest", "headrace[check]", wheel(ROOT / "examples" / "plugin", tmp_path_factory.mktemp("stranger")))
     return clean

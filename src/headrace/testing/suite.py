@@ -13,6 +13,7 @@ import msgspec
 from headrace import paths
 from headrace.errors import HeadraceError
 from headrace.graph.build import build as build_facts
+from headrace.graph.check import check
 from headrace.graph.files import fact_files, version
 from headrace.hooks import merge
 from headrace.hooks.bench import Bench
@@ -54,10 +55,10 @@ def conformance(plugin: type) -> tuple[str, ...]:
     made: list[str] = []
     faults: list[str] = []
     trial: Trial | None = None
-    for name, check in CHECKS.items():
+    for name, examine in CHECKS.items():
         try:
             trial = trial or _trial(plugin)
-            faults += [f"{name}: {fault}" for fault in check(trial)]
+            faults += [f"{name}: {fault}" for fault in examine(trial)]
         except (HeadraceError, _Unusable) as error:
             faults.append(f"{name}: {error}")
         made.append(name)
@@ -94,9 +95,14 @@ def _desk(plugin: type, stand_in: type) -> Desk:
 
 
 def _facts(trial: Trial) -> Iterator[str]:
-    """What it needs is there, and an outlet of its own facts is of a family that it claims."""
+    """What it needs is there, and the facts that it brings pass every check that the shipped ones pass."""
     for need in missing(getattr(trial.plugin, "facts_needed", ()), trial.desk.facts):
         yield f"it needs {need}, which the facts do not have"
+    folders = [item for item in trial.desk.plugins.fact_folders() if item[0] == _name(trial)]
+    if folders:
+        for fault in check(extra=folders):
+            if fault.file.startswith(f"plugin/{_name(trial)}/"):
+                yield f"{fault.file}, {fault.node}: {fault.message}"
 
 
 def _example(trial: Trial) -> Iterator[str]:

@@ -48,13 +48,16 @@ def settled(answer: Any) -> Any:
 
 
 def _recorded(hook: str, method: Callable[..., Any], log: list[Call]) -> Callable[..., Any]:
+    names = list(inspect.signature(method).parameters)[1:]
+
     @functools.wraps(method)
-    def run(self: Any, **arguments: Any) -> Any:
+    def run(self: Any, *given: Any) -> Any:  # hooks are called by position, in the method's own order
+        arguments = dict(zip(names, given, strict=True))
         before = {name: fingerprint(value) for name, value in arguments.items()}
         with guarded(sys.modules.get(method.__module__)) as tried:
-            answer = settled(method(self, **arguments))
+            answer = settled(method(self, *given))
         changed = tuple(name for name, value in arguments.items() if fingerprint(value) != before[name])
-        log.append(Call(hook, dict(arguments), answer, changed, tuple(tried)))
+        log.append(Call(hook, arguments, answer, changed, tuple(tried)))
         return answer
 
     return run
