@@ -25,7 +25,7 @@ FIRST_PARTY: tuple[Entry, ...] = (
         name="review",
         module="headrace_plugins.reports.review",
         attribute="Review",
-        summary="the design-review document as Markdown, with its tables as CSV",
+        summary="The design-review document as Markdown, with its tables as CSV.",
         hooks=("report",),
         families=(),
     ),

@@ -23,7 +23,7 @@ class Review:
     """Proposes the documents of one scenario; needs a result on refills, shows the ceilings beside it."""
 
     name = "review"
-    summary = "the design-review document as Markdown, with its tables as CSV"
+    summary = "The design-review document as Markdown, with its tables as CSV."
     options = Options
 
     def report(self, result: Result, options: Options) -> Iterator[Document]:

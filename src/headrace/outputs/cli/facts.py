@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from enum import StrEnum
 from typing import TYPE_CHECKING, Annotated
 
 import msgspec
@@ -16,6 +17,16 @@ if TYPE_CHECKING:
     from headrace.pages.model import Page
     from headrace.values.facts import Facts
 
+class Rdf(StrEnum):
+    """RDF formats that any triple store reads."""
+
+    turtle = "turtle"
+    nquads = "nquads"
+    jsonld = "jsonld"
+
+
+RdfFormat = Annotated[Rdf, typer.Option("--format", help="Turtle, N-Quads or JSON-LD.")]
+Derived = Annotated[bool, typer.Option("--derived", help="With the statements that follow from the facts.")]
 Wanted = Annotated[
     str,
     typer.Argument(
@@ -58,6 +69,17 @@ def show(name: Wanted, format: FormatOption = Format.table) -> int:
     if format is Format.json:
         return _json({"facts": plain, "version": facts.version})
     return _print(pages, format)
+
+
+def export(format: RdfFormat = Rdf.turtle, derived: Derived = False) -> int:
+    """All facts in a standard RDF format."""
+    from headrace.graph import export as graphs  # RDF libraries, for this command alone
+    from headrace.hooks.manager import Manager  # as above
+
+    with working("facts"):
+        text = graphs.export(format, extra=Manager.load().fact_folders(), derived=derived)
+    emit(text, exact=True)
+    return 0
 
 
 def sources(format: FormatOption = Format.table) -> int:
@@ -106,6 +128,6 @@ def _print(pages: list[Page], format: Format) -> int:
 def register(app: typer.Typer) -> None:
     """Add the group."""
     group = typer.Typer(help="What the facts say, and whether they hold.", no_args_is_help=True, rich_markup_mode=None)
-    for command in (check, show, sources):
+    for command in (check, show, export, sources):
         group.command()(command)
     app.add_typer(group, name="facts")
