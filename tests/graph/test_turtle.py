@@ -1,6 +1,7 @@
 """The canonical writer: one text for one set of triples, and nothing lost on the way."""
 
 import random
+from pathlib import Path
 
 import pytest
 from hypothesis import given, settings
@@ -8,7 +9,7 @@ from hypothesis import strategies as st
 from pyoxigraph import BlankNode, CanonicalizationAlgorithm, Dataset, Literal, NamedNode, Quad, RdfFormat, Triple, parse
 
 from headrace.graph import terms
-from headrace.graph.turtle import write
+from headrace.graph.turtle import main, write
 
 EX = "https://example.org/"
 
@@ -110,6 +111,17 @@ def test_lists_of_shapes() -> None:
 def test_blank_nodes_that_need_an_address_are_refused(body: str, message: str) -> None:
     with pytest.raises(ValueError, match=message):
         written(body)
+
+
+def test_files_are_put_into_the_form(tmp_path: Path) -> None:
+    path = tmp_path / "a.ttl"
+    path.write_text("@prefix c: <https://w3id.org/headrace/id/compound/> . # by hand\nc:b <urn:p> 1 . c:a <urn:p> 1.50 .")
+    main([str(path)])
+    assert path.read_text().endswith("c:a <urn:p> 1.50 .\n\nc:b <urn:p> 1 .\n")
+    path.write_text("c:a c:b .")
+    with pytest.raises(SyntaxError):
+        main([str(path)])
+    assert path.read_text() == "c:a c:b ."
 
 
 def test_a_named_graph_is_refused() -> None:

@@ -2,9 +2,9 @@
 
     anchors 1; precursors, coenzymes and what a route takes or gives freely 0
     on biosynthetic routes:  sum_i y_i S_ij = 0  for every reaction j of every route     (one exact solution)
-    elsewhere, rule by rule until nothing changes:
+    elsewhere, repeated until nothing changes:
       fed:   what some host takes up from the medium carries none
-      made:  what reactions make from known compounds alone carries what those carry, if all of them agree
+      made:  what a reaction makes from known compounds carries what those carry; of several ways the least counts
       rest:  0
 
 A reaction of a route conserves skeletons by construction, so what makes or unmakes them (a refill, a removal) is
@@ -21,26 +21,12 @@ from collections.abc import Iterable, Mapping
 from fractions import Fraction
 
 from headrace.errors import FactsError
+from headrace.graph.boundary import Boundary
 from headrace.solve.exact import solve
 from headrace.values.facts import Facts, Reaction
 
 Contents = dict[str, Fraction]
 ZERO, ONE = Fraction(0), Fraction(1)
-FREE_ROLES = (
-    "acyl-carrier",
-    "adenylate",
-    "ammonium",
-    "by-product",
-    "inorganic-carbon",
-    "mineral",
-    "motive-proton",
-    "one-carbon",
-    "one-carbon-carrier",
-    "oxygen",
-    "peroxide",
-    "proton",
-    "water",
-)
 
 
 def contents(facts: Facts) -> Contents:
@@ -61,14 +47,13 @@ def turnover(reaction: Reaction, known: Mapping[str, Fraction]) -> Fraction:
 
 def fixed(facts: Facts) -> Contents:
     """Contents by definition."""
-    free = {name for role in FREE_ROLES for name in facts.roles.get(role, ())}
-    free |= {name for pair in facts.electron_pairs.items() for name in pair}
+    boundary = Boundary(facts)
     known: Contents = {}
-    for compound in facts.compounds.values():
+    for name, compound in facts.compounds.items():
         if compound.anchor:
-            known[compound.slug] = ONE
-        elif compound.precursor or compound.carrier or compound.slug in free:
-            known[compound.slug] = ZERO
+            known[name] = ONE
+        elif compound.carrier or name in boundary.free or name in boundary.form:
+            known[name] = ZERO
     return known
 
 
@@ -104,26 +89,29 @@ def on_routes(facts: Facts, known: Mapping[str, Fraction]) -> Contents:
 
 def off_routes(facts: Facts, known: Mapping[str, Fraction]) -> Contents:
     """Contents of the compounds that no route names, by the rules above."""
-    found = dict(known)
-    found |= {name: ZERO for name in _fed(facts) if name not in found}
-    turns = _turns(facts)
-    while fresh := _made(turns, found):
-        found |= fresh
-    return found | {name: ZERO for name in facts.compounds if name not in found}
+    start = dict(known) | {name: ZERO for name in _fed(facts) if name not in known}
+    turns = [turn for turn in _turns(facts) if any(name not in start for name in turn)]
+    found = start
+    for _ in range(len(facts.compounds)):
+        least = start | _made(turns, start, found)
+        if least == found:
+            return {name: ZERO for name in facts.compounds if name not in found} | found
+        found = least
+    raise FactsError("the skeleton contents off routes do not settle", node="compound")
 
 
-def _made(turns: Iterable[Mapping[str, Fraction]], known: Mapping[str, Fraction]) -> Contents:
-    """What becomes known by one more step: compounds made from known ones, where all ways agree and are whole."""
-    ways: dict[str, set[Fraction]] = defaultdict(set)
+def _made(turns: Iterable[Mapping[str, Fraction]], start: Contents, now: Contents) -> Contents:
+    """The least that each compound outside `start` carries by the reactions that make it from what is known now."""
+    least: Contents = {}
     for turn in turns:
-        open_ones = [name for name in turn if name not in known]
-        if len(open_ones) == 1 and turn[open_ones[0]] > 0:
-            brought = -sum((count * known[name] for name, count in turn.items() if name in known), ZERO)
-            ways[open_ones[0]].add(brought / turn[open_ones[0]])
-    agreed = {name: min(values) for name, values in ways.items() if len(values) == 1}
-    return {name: value if value >= 0 and value.denominator == 1 else ZERO for name, value in agreed.items()} | {
-        name: ZERO for name, values in ways.items() if len(values) > 1
-    }
+        for name, count in turn.items():
+            others = [(other, n) for other, n in turn.items() if other != name]
+            if name in start or count < 0 or any(other not in now for other, _ in others):
+                continue
+            brought = -sum((n * now[other] for other, n in others), ZERO) / count
+            value = brought if brought > 0 and brought.denominator == 1 else ZERO
+            least[name] = min(value, least.get(name, value))
+    return least
 
 
 def _turns(facts: Facts) -> list[dict[str, Fraction]]:

@@ -4,15 +4,19 @@ Prefix block of just the prefixes used, sorted; subjects sorted by IRI; `a` firs
 by IRI; several objects of one predicate on lines of their own; blank nodes inline, sorted by content;
 RDF lists (shapes only) as `( a b )`; numbers keep their text (1.50 stays 1.50). Line breaks inside text are
 escaped, so that a checkout with other line endings reads the same facts.
+
+`python -m headrace.graph.turtle FILE ...` puts files into this form (comments with # are lost: use rdfs:comment).
 """
 
 from __future__ import annotations
 
 import re
+import sys
 from collections import defaultdict
 from collections.abc import Iterable
+from pathlib import Path
 
-from pyoxigraph import BlankNode, DefaultGraph, Literal, NamedNode, Quad, Triple
+from pyoxigraph import BlankNode, DefaultGraph, Literal, NamedNode, Quad, RdfFormat, Triple, parse
 
 from headrace.graph import terms
 
@@ -191,3 +195,14 @@ def _escaped(char: str) -> str:
 
 def _escaped_iri(iri: str) -> str:
     return "".join(f"\\u{ord(char):04X}" if char in '<>"{}|^`\\' or ord(char) <= 0x20 else char for char in iri)
+
+
+def main(names: Iterable[str]) -> None:
+    """Rewrite files in the canonical form; one that is no Turtle stops with the parser's message and stays as it is."""
+    for name in names:
+        path = Path(name)
+        path.write_bytes(write(parse(path.read_bytes(), format=RdfFormat.TURTLE)).encode())
+
+
+if __name__ == "__main__":
+    main(sys.argv[1:])
