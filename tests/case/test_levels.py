@@ -10,6 +10,7 @@ from hypothesis import strategies as st
 from headrace.case import Conditions, holds, levels
 from headrace.case.levels import is_removed
 from headrace.values.facts import Expression, HostReaction, Isozyme
+
 from .world import HOST, ROWS, SEEN
 
 
@@ -74,7 +75,10 @@ def test_a_row_goes_when_no_isozyme_is_whole(genes: tuple[tuple[str, ...], ...],
     assert is_removed(row(genes=genes), frozenset(removed)) is gone
 
 
-def judged(rules: tuple[Expression, ...], conditions: Conditions, genes: tuple[tuple[str, ...], ...] = ()) -> tuple[str, str, bool]:
+Genes = tuple[tuple[str, ...], ...]
+
+
+def judged(rules: tuple[Expression, ...], conditions: Conditions, genes: Genes = ()) -> tuple[str, str, bool]:
     host = msgspec.structs.replace(HOST, expressions=rules)
     found = levels(host, [row(*(each.slug for each in rules), genes=genes)], conditions)["row"]
     return found.level, found.kind, found.fitted

@@ -95,8 +95,8 @@ REACTIONS = (
 )
 
 
-def _row(slug: str, reaction: str, genes: str = "", rules: str = "always", place: str = "cell", **fields: str) -> HostReaction:
-    """genes: isozymes separated by "/", genes of one by "+"."""
+def row(slug: str, reaction: str, genes: str = "", rules: str = "always", place: str = "cell", **fields: str) -> HostReaction:
+    """A row of the host. genes: isozymes separated by "/", genes of one by "+"."""
     isozymes = tuple(Isozyme(tuple(each.split("+"))) for each in genes.split("/") if each)
     where = fields if "outer" in fields else {"place": place, **fields}
     values: dict[str, Any] = {"label": slug.replace("-", " "), "direction": "forward", **where}
@@ -104,12 +104,12 @@ def _row(slug: str, reaction: str, genes: str = "", rules: str = "always", place
 
 
 ROWS = (
-    _row("press", "press", "prsA/prsB+prsC"),
-    _row("mill-small", "mill-small", "milS"),
-    _row("mill-large", "mill-large", "milL", "oil-only oil-relieved"),
-    _row("weave", "weave", "wvnA+wvnB", "weave-basal weave-relieved"),
-    _row("weave-barn", "weave", "wvnC", "", "barn"),
-    _row("carry-sugar", "carry-sugar", rules="always", outer="field", inner="cell"),
+    row("press", "press", "prsA/prsB+prsC"),
+    row("mill-small", "mill-small", "milS"),
+    row("mill-large", "mill-large", "milL", "oil-only oil-relieved"),
+    row("weave", "weave", "wvnA+wvnB", "weave-basal weave-relieved"),
+    row("weave-barn", "weave", "wvnC", "", "barn"),
+    row("carry-sugar", "carry-sugar", rules="always", outer="field", inner="cell"),
 )
 
 RULES = (
@@ -198,6 +198,11 @@ def resolve(text: str = TEXT, *, host: dict[str, Any] | None = None, **options: 
 def stated(extra: str = "", growth: str = '"0.1 /h"', uptake: str = '"2 mmol/gDW/h"') -> str:
     """The usual scenario with other values and more tables behind it."""
     return TEXT.replace('"0.1 /h"', growth).replace('"2 mmol/gDW/h"', uptake) + "\n" + extra
+
+
+def tuned(value: Any, /, **fields: Any) -> Any:
+    """A frozen value with some fields replaced."""
+    return msgspec.structs.replace(value, **fields)
 
 
 def messages(case_: Case, check: str = "") -> list[str]:

@@ -70,6 +70,7 @@ class _Scan:
         path = ""
         for part in outer:
             path = self.latest(join(path, part))
+            self.note(path, start)
         path = join(path, last)
         if array:
             self.counts[path] = self.counts.get(path, 0) + 1
