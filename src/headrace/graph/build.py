@@ -7,10 +7,12 @@ from collections.abc import Callable, Iterable, Mapping, Sequence
 from fractions import Fraction
 from typing import TypeVar
 
+import msgspec
 from pyoxigraph import NamedNode
 
 from headrace.errors import FactsError
 from headrace.graph import balance, terms
+from headrace.graph.contents import contents
 from headrace.graph.convert import Entry, Reader
 from headrace.graph.fault import Fault
 from headrace.graph.files import FactFile
@@ -31,7 +33,7 @@ def build(files: Sequence[FactFile], version: str) -> Facts:
     if facts is None:
         first, *others = sorted(faults, key=lambda fault: (fault.file, fault.node, fault.rule))
         raise FactsError(first.message, file=first.file, node=first.node, others=len(others))
-    return facts
+    return msgspec.structs.replace(facts, contents=contents(facts))
 
 
 def collect(graph: Graph, version: str) -> tuple[Facts | None, list[Fault]]:

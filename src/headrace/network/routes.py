@@ -16,9 +16,10 @@ from dataclasses import dataclass, field
 from fractions import Fraction
 
 from headrace.errors import FactsError
+from headrace.graph.boundary import Boundary
 from headrace.network.sites import Site, Step, site_of, sites_of, terms_of
-from headrace.network.totals import Boundary, Totals, totals
-from headrace.solve.exact import solve
+from headrace.network.totals import Totals, totals
+from headrace.solve.exact import Solution, solve
 from headrace.values.answers import PoolTerm
 from headrace.values.case import Case, Level
 from headrace.values.facts import Facts, HostReaction, Route
@@ -82,7 +83,7 @@ class RouteBook:
                 self._routes.setdefault(route.makes, []).append(route)
         for found in self._routes.values():
             found.sort(key=self._rank)
-        self._kept: dict[tuple[Pool, tuple[str, ...], tuple[str, ...]], tuple[dict[Step, Fraction], tuple[str, ...]]] = {}
+        self._kept: dict[tuple[object, ...], RouteVector] = {}
 
     def routes(self, compound: str) -> tuple[Route, ...]:
         """The routes that this host may use for a compound, the one in force first."""
@@ -94,20 +95,17 @@ class RouteBook:
         """The vector of one mole of a compound. Raises FactsError when its route is absent, open or contradictory."""
         return self.sum({(compound, place): Fraction(1)}, chosen=chosen, through=through)
 
-    def sum(
-        self, amounts: Mapping[Pool, Fraction], *, chosen: Iterable[str] = (), through: Iterable[str] = ()
-    ) -> RouteVector:
+    def sum(self, amounts: Mapping[Pool, Fraction], *, chosen: Iterable[str] = (), through: Iterable[str] = ()) -> RouteVector:
         """The vector of a composition: {(compound, compartment): mole}; negative amounts are given back."""
-        rates: dict[Step, Fraction] = {}
-        used: set[str] = set()
-        placed = {(c, self._home(c, place)): n for (c, place), n in amounts.items()}
-        for pool, amount in sorted(placed.items()):
-            found, routes = self._solution(pool, tuple(sorted(chosen)), tuple(sorted(through)))
-            used.update(routes)
-            for step, rate in found.items():
-                rates[step] = rates.get(step, Fraction(0)) + rate * amount
-        rates = {step: rate for step, rate in sorted(rates.items()) if rate}
-        return self._describe(placed, rates, totals(self, rates, placed), tuple(sorted(used)))
+        placed: dict[Pool, Fraction] = {}
+        for (compound, place), amount in amounts.items():
+            pool = (compound, self._home(compound, place))
+            placed[pool] = placed.get(pool, Fraction(0)) + amount
+        key = (tuple(sorted(placed.items())), tuple(sorted(chosen)), tuple(sorted(through)))
+        if key not in self._kept:
+            rates, used = self._solve(*key)
+            self._kept[key] = self._describe(placed, rates, totals(self, rates, placed), used)
+        return self._kept[key]
 
     def _describe(
         self, amounts: Mapping[Pool, Fraction], rates: dict[Step, Fraction], sums: Totals, used: tuple[str, ...]
@@ -142,56 +140,68 @@ class RouteBook:
         return place
 
     def _rank(self, route: Route) -> tuple[int, int, bool, bool, str]:
-        """Routes whose steps the case expresses go first; then the host's own; then the preferred one; then by name."""
-        levels = [max((self.levels[row.slug].level for row in self.rows.get(r, ())), key=_strength, default="") for r in route.uses]
-        return (levels.count(""), levels.count("off"), not route.hosts, not route.preferred, route.slug)
+        """Routes whose steps the case expresses go first; then preferred ones; then the host's own; then by name."""
+        levels = [self._level(reaction) for reaction in route.uses]
+        return (levels.count(""), levels.count("off"), not route.preferred, not route.hosts, route.slug)
 
-    def _solution(
-        self, pool: Pool, chosen: tuple[str, ...], through: tuple[str, ...]
+    def _level(self, reaction: str) -> str:
+        """The best level of the rows that catalyse a reaction: on, basal or off; "" when there is no row."""
+        return max((self.levels[row.slug].level for row in self.rows.get(reaction, ())), key=_strength, default="")
+
+    def _solve(
+        self, amounts: tuple[tuple[Pool, Fraction], ...], chosen: tuple[str, ...], through: tuple[str, ...]
     ) -> tuple[dict[Step, Fraction], tuple[str, ...]]:
-        key = (pool, chosen, through)
-        if key not in self._kept:
-            self._kept[key] = self._solve(pool, chosen, through)
-        return self._kept[key]
-
-    def _solve(self, pool: Pool, chosen: tuple[str, ...], through: tuple[str, ...]) -> tuple[dict[Step, Fraction], tuple[str, ...]]:
-        compound, place = pool
         free = self.boundary.free - set(through)
-        if compound in free or (compound in self.boundary.form and not self._routes.get(compound)):
+        made = {pool: (self._made_as(pool[0]), amount) for pool, amount in amounts if pool[0] not in free and amount}
+        made = {pool: found for pool, found in made.items() if found[0]}
+        if not made:
             return {}, ()
-        routes = self._closure(compound, chosen, free)
+        routes = self._closure({name for name, _ in made.values()}, chosen, free)
         steps = sorted({step for route in routes for step in self._steps(route)})
         rows: dict[Pool, int] = {}
         columns = [self._column(step, rows, free) for step in steps]
-        wanted = (self.boundary.form.get(compound, compound), place)
-        if wanted not in rows:
-            raise FactsError(f"no step of its route makes {compound} in the {place} of {self.host.slug}", node=routes[0].slug)
-        answer = solve(columns, [Fraction(int(number == rows[wanted])) for number in range(len(rows))])
+        right = [Fraction(0)] * len(rows)
+        for (compound, place), (_, amount) in made.items():
+            number = rows.get((self.boundary.form.get(compound, compound), place))
+            if number is None:
+                words = f"no step of its route makes {compound} in the {place} of {self.host.slug}"
+                raise FactsError(words, node=f"compound/{compound}")
+            right[number] += amount
+        answer = solve(columns, right)
         if answer.status != "unique":
-            raise FactsError(self._complaint(answer.status, steps, answer.free, answer.clash, rows), node=routes[0].slug)
+            names = ", ".join(sorted({compound for compound, _ in made}))
+            raise FactsError(self._complaint(answer, steps, rows, names), node="; ".join(sorted(r.slug for r in routes)[:3]))
         rates = {step: rate for step, rate in zip(steps, answer.x, strict=True) if rate}
         running = {s.reaction for s in rates}
         return rates, tuple(sorted(route.slug for route in routes if running.intersection(route.uses)))
 
-    def _closure(self, compound: str, chosen: tuple[str, ...], free: frozenset[str] | set[str]) -> list[Route]:
-        """The route of a compound and, in turn, of every other compound that its steps name and that has a route."""
+    def _made_as(self, compound: str) -> str:
+        """The compound whose route makes this one: itself, or for a form of a moiety another form; "" for a moiety without."""
+        if compound not in self.boundary.form or self._routes.get(compound):
+            return compound
+        mates = (name for name, form in self.boundary.form.items() if form == self.boundary.form[compound])
+        return next((name for name in sorted(mates) if self._routes.get(name)), "")
+
+    def _closure(self, compounds: set[str], chosen: tuple[str, ...], free: frozenset[str]) -> list[Route]:
+        """The routes of compounds and, in turn, of every other compound that their steps name and that has a route."""
         found: dict[str, Route] = {}
-        waiting = [compound]
+        waiting = sorted(compounds)
+        for name in waiting:
+            if not self._routes.get(name):
+                raise FactsError(
+                    f"{self.host.slug} has no route for {name}",
+                    node=f"compound/{name}",
+                    hint="a route is a hr:Route that hr:makes the compound; it may be bound to other hosts by hr:host",
+                )
         while waiting:
             name = waiting.pop()
             routes = self._routes.get(name)
-            if name in found or (name in free and name != compound) or not routes:
+            if name in found or (name in free and name not in compounds) or not routes:
                 continue
             found[name] = next((r for r in routes if r.slug in chosen), routes[0])
             for reaction in found[name].uses:
                 waiting.extend(term.compound for term in self.facts.reactions[reaction].terms)
-        if compound not in found:
-            raise FactsError(
-                f"{self.host.slug} has no route for {compound}",
-                node=f"compound/{compound}",
-                hint="a route is a hr:Route node that hr:makes the compound; headrace facts show lists those that there are",
-            )
-        return list(found.values())
+        return [found[name] for name in sorted(found)]
 
     def _steps(self, route: Route) -> Iterable[Step]:
         for reaction in route.uses:
@@ -206,14 +216,12 @@ class RouteBook:
                 column[number] = column.get(number, Fraction(0)) + count
         return {number: count for number, count in column.items() if count}
 
-    def _complaint(
-        self, status: str, steps: list[Step], free: Iterable[int], clash: Mapping[int, Fraction] | None, rows: Mapping[Pool, int]
-    ) -> str:
-        if status == "many":
-            names = ", ".join(f"{steps[j].reaction} ({steps[j].site.words()})" for j in free)
-            return f"the route has more than one solution in {self.host.slug}; not determined: {names}"
-        names = ", ".join(f"{c} in the {p}" for (c, p), number in rows.items() if number in (clash or {}))
-        return f"the route can't be balanced in {self.host.slug}; at odds: {names}"
+    def _complaint(self, answer: Solution, steps: list[Step], rows: Mapping[Pool, int], made: str) -> str:
+        if answer.status == "many":
+            names = ", ".join(f"{steps[j].reaction} ({steps[j].site.words()})" for j in answer.free)
+            return f"the route to {made} has more than one solution in {self.host.slug}; not determined: {names}"
+        names = ", ".join(f"{c} in the {p}" for (c, p), number in rows.items() if number in (answer.clash or {}))
+        return f"the route to {made} can't be balanced in {self.host.slug}; at odds: {names}"
 
 
 def _strength(level: str) -> int:

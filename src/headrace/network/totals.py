@@ -1,7 +1,7 @@
 """Sums over the steps of a route: pools taken and returned, what only carries nitrogen, and the needs.
 
-    taken = sum of what single steps take,  returned = sum of what single steps give,  net = taken - returned
-    shuttled = min(what steps take of an anchor to load a nitrogen carrier, what comes back); part of neither
+taken = sum of what single steps take,  returned = sum of what single steps give,  net = taken - returned
+shuttled = min(what steps take of an anchor to load a nitrogen carrier, what comes back); part of neither
 """
 
 from __future__ import annotations
@@ -12,36 +12,13 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import Protocol
 
+from headrace.graph.boundary import Boundary
 from headrace.network.sites import Step, terms_of
 from headrace.values.answers import PoolTerm
 from headrace.values.facts import Compound, Facts, Host
 
 Pool = tuple[str, str]
 Sums = dict[Pool, Fraction]
-
-
-class Boundary:
-    """Which compounds a route takes and gives freely, and which only change form.
-
-    free: anchors, precursors, coenzymes without forms, and what the facts' roles name as free. form: compound -> the
-    name of the moiety that it is a form of.
-    """
-
-    FREE_ROLES = (
-        "ammonium", "by-product", "inorganic-carbon", "mineral", "motive-proton", "one-carbon", "oxygen", "peroxide", "proton", "water",
-    )
-    FORM_ROLES = ("adenylate", "one-carbon-carrier")
-
-    def __init__(self, facts: Facts) -> None:
-        self.form: dict[str, str] = {}
-        for role in self.FORM_ROLES:
-            self.form.update(dict.fromkeys(facts.roles[role], f"{role} forms"))
-        for reduced, oxidised in facts.electron_pairs.items():
-            self.form |= {reduced: f"{oxidised} forms", oxidised: f"{oxidised} forms"}
-        named = {slug for role in self.FREE_ROLES for slug in facts.roles[role]}
-        single = {c.slug for c in facts.compounds.values() if c.carrier and c.slug not in self.form}
-        pools = {c.slug for c in facts.compounds.values() if c.anchor or c.precursor}
-        self.free = frozenset((named | single | pools) - set(self.form))
 
 
 class Book(Protocol):
@@ -145,11 +122,11 @@ def needs(facts: Facts, crossings: Mapping[str, Fraction]) -> dict[str, Fraction
             found[need] += crossings[name] * weight
 
     for need, role, element in (("atp", "adenylate", "P"), ("one-carbon", "one-carbon-carrier", "C")):
-        members = [facts.compounds[name] for name in facts.roles[role]]
-        least = min(c.formula[element] for c in members)
+        members = [facts.compounds[name] for name in facts.roles.get(role, ())]
+        least = min((c.formula[element] for c in members), default=0)
         for compound in members:
             add(need, compound.slug, compound.formula[element] - least)
-    for name in facts.roles["one-carbon"]:
+    for name in facts.roles.get("one-carbon", ()):
         add("one-carbon", name, facts.compounds[name].formula["C"])
     for reduced in facts.electron_pairs:
         add("quinol" if facts.compounds[reduced].membrane else reduced, reduced, 1)
@@ -159,6 +136,6 @@ def needs(facts: Facts, crossings: Mapping[str, Fraction]) -> dict[str, Fraction
         ("oxygen", "oxygen", Fraction(1)),
         ("oxygen", "peroxide", Fraction(1, 2)),
     ):
-        for name in facts.roles[role]:
+        for name in facts.roles.get(role, ()):
             add(need, name, weight)
     return {need: count for need, count in sorted(found.items()) if count}

@@ -15,7 +15,7 @@ from collections import defaultdict
 from collections.abc import Iterator, Mapping, Sequence
 from fractions import Fraction
 
-from headrace.network.totals import Boundary
+from headrace.graph.boundary import Boundary
 from headrace.values.answers import Draw
 from headrace.values.case import Case, Demand
 from headrace.values.facts import Facts
