@@ -28,7 +28,7 @@ class Citations:
 
     def cite(self, sources: str) -> str:
         """Numbers such as "[1, 3]" for citations or source slugs that are separated by "; "."""
-        return self.cite_all(tuple(self._split(sources)))
+        return self.cite_all(tuple(self.split(sources)))
 
     def cite_all(self, sources: tuple[str, ...]) -> str:
         """The same for several sources."""
@@ -55,7 +55,7 @@ class Citations:
         """What the marks that were used mean."""
         return (RECALLED_NOTE,) if self.recalled else ()
 
-    def _split(self, sources: str) -> list[str]:
+    def split(self, sources: str) -> list[str]:
         """The citations of a text; one that holds a "; " itself is known by its whole text."""
         parts, found = [part for part in sources.split("; ") if part.strip()], []
         while parts:

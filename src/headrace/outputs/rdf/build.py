@@ -62,6 +62,10 @@ def literal(value: Any) -> Literal:
     raise TypeError(f"no literal for {type(value).__name__}")
 
 
+def _labelled(field: Field, value: Any) -> Literal:
+    return Literal(value, language="en") if field.property == facts_terms.LABEL else literal(value)
+
+
 def property_of(name: str) -> Field:
     """The field's entry in the table, or `hr:` with its name in camel case.
 
@@ -109,7 +113,8 @@ class Builder:
             if isinstance(value, Fraction):  # a number to compute with, and the exact text beside it
                 self.graph.add(subject, f"{field.property}Exact", Literal(str(value)))
                 value = float(value)
-            self.graph.add(subject, field.property, literal(value))
+            unknown = field.finds and not field.link  # a text where an IRI was expected: said under another property
+            self.graph.add(subject, field.property + ("Name" if unknown else ""), _labelled(field, value))
             for iri in found:
                 self.graph.add(subject, field.link, iri)
 
@@ -139,6 +144,8 @@ class Builder:
             self.graph.add(node, terms.INDEX, literal(number))
             if "label" not in item:
                 self.graph.add(node, facts_terms.LABEL, Literal(self.links.words(part.name, item), language="en"))
+            for iri in self.links.pool(item):
+                self.graph.add(node, terms.POOL, iri)
             self.fields(node, item)
 
     @staticmethod

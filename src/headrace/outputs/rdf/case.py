@@ -45,7 +45,8 @@ def case(graph: Graph, links: Links) -> str:
     graph.add(node, terms.BREATHES, Literal(asked.oxygen))
     graph.add(node, terms.OPENED, literal(asked.opened))
     graph.add(node, terms.SLACK, literal(float(asked.slack)))
-    numbers = {terms.GROWTH: asked.growth, terms.GROWTH_YIELD: asked.growth_yield, facts_terms.HR + "aerationRate": asked.oxygen_rate}
+    aeration = facts_terms.HR + "aerationRate"
+    numbers = {terms.GROWTH: asked.growth, terms.GROWTH_YIELD: asked.growth_yield, aeration: asked.oxygen_rate}
     for property_, value in numbers.items():
         if value is not None:
             graph.add(node, property_, literal(float(value)))
@@ -101,7 +102,8 @@ def _demands(graph: Graph, links: Links, node: str) -> None:
         for iri in links.outlet(demand.outlet):
             graph.add(part, facts_terms.HR + "outlet", iri)
         for compound, count in demand.draws.items():
-            draw = graph.node(f"case/demand/{number}/{compound}", facts_terms.HR + "DrawnCompound", links.context.compound(compound))
+            label = links.context.compound(compound)
+            draw = graph.node(f"case/demand/{number}/{compound}", facts_terms.HR + "DrawnCompound", label)
             graph.add(part, facts_terms.DRAWS, draw)
             graph.add(draw, facts_terms.HAS_COMPOUND, facts_terms.COMPOUND_BASE + compound)
             graph.add(draw, facts_terms.COUNT, literal(float(count)))

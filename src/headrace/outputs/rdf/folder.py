@@ -7,7 +7,7 @@ reader sees all of a file or none of it, whatever happens to the writer. Names a
 from __future__ import annotations
 
 import os
-import tempfile
+import secrets
 import time
 from collections.abc import Iterator
 from pathlib import Path
@@ -44,16 +44,15 @@ def save(folder: Path, run: Run) -> Path:
         raise InputError("is no folder", file=folder, accepted="a folder for results, or a path where one can be made")
     folder.mkdir(parents=True, exist_ok=True)
     _forget_abandoned(folder)
-    handle, name = tempfile.mkstemp(prefix=f".{run.name[:60]}-", suffix=_PART, dir=folder)
+    part = folder / f".{secrets.token_hex(8)}{_PART}"
     try:
-        with os.fdopen(handle, "wb") as file:
+        with open(part, "xb") as file:
             file.write(run.trig)
             file.flush()
             os.fsync(file.fileno())
-        os.chmod(name, 0o666 & ~_umask())
-        os.replace(name, folder / (run.name + ENDING))
+        os.replace(part, folder / (run.name + ENDING))
     except BaseException:
-        Path(name).unlink(missing_ok=True)
+        part.unlink(missing_ok=True)
         raise
     _flush_folder(folder)
     return folder / (run.name + ENDING)
@@ -101,12 +100,6 @@ def _belongs(quad: Quad, run: str) -> bool:
     return isinstance(subject, BlankNode) or (
         isinstance(subject, NamedNode) and (subject.value == run or subject.value.startswith(run + "/"))
     )
-
-
-def _umask() -> int:
-    mask = os.umask(0o077)
-    os.umask(mask)
-    return mask
 
 
 def _flush_folder(folder: Path) -> None:

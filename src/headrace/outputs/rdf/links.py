@@ -7,6 +7,7 @@ from functools import cached_property
 from typing import Any
 
 from headrace.graph import terms
+from headrace.graph.derive import pool
 from headrace.names import slugify
 from headrace.pages.context import Context
 from headrace.pages.numbers import show
@@ -106,6 +107,13 @@ class Links:
         """The sources of a text of citations or slugs that are separated by "; "."""
         slugs = (self._sources.get(part, part) for part in self.context.split(text))
         return tuple(terms.SOURCE_BASE + slug for slug in dict.fromkeys(slugs) if slug in self.facts.sources)
+
+    def pool(self, item: Mapping[str, Any]) -> tuple[str, ...]:
+        """The pool of a part that has a compound and a compartment."""
+        compound, place = item.get("compound"), item.get("compartment")
+        if not compound or not place or not self.compound(compound) or not self.place(place):
+            return ()
+        return (pool(self.host, compound, place),)
 
     def words(self, name: str, item: Mapping[str, Any]) -> str:
         """A label for a part that has none: what it is, and what it is about."""

@@ -34,17 +34,11 @@ def describe(graph: Graph, result: Result, occasion: Occasion, scenario: str, us
     graph.add(activity, terms.STARTED, _time(occasion.started))
     graph.add(activity, terms.ENDED, _time(occasion.ended))
     graph.add(activity, terms.USED, scenario)
-    graph.add(activity, terms.USED, _facts(graph, result))
+    graph.add(run, terms.FACTS_VERSION, Literal(result.facts_version))
+    graph.add(activity, terms.USED, terms.FACTS_VERSION_BASE + result.facts_version)
     for iri in used:
         graph.add(activity, terms.USED, iri)
     _software(graph, activity, result, occasion)
-
-
-def _facts(graph: Graph, result: Result) -> str:
-    node = graph.node("facts", facts_terms.ENTITY, f"facts, version {result.facts_version}")
-    graph.add(node, facts_terms.VERSION, Literal(result.facts_version))
-    graph.add(node, terms.SPECIALIZATION_OF, facts_terms.FACTS_GRAPH)
-    return node
 
 
 def _software(graph: Graph, activity: str, result: Result, occasion: Occasion) -> None:

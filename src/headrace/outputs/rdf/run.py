@@ -6,7 +6,7 @@ import secrets
 from datetime import UTC, datetime
 
 from msgspec import Struct
-from pyoxigraph import Literal, Quad, RdfFormat, serialize
+from pyoxigraph import Literal, NamedNode, Quad, RdfFormat, serialize
 
 import headrace
 from headrace.graph import terms as facts_terms
@@ -62,8 +62,13 @@ def make(result: Result, started: datetime, rates: bool = False, agent: str = ""
 
 
 def trig(statements: list[Quad]) -> bytes:
-    """The statements as TriG text with short names."""
+    """The statements of one run as TriG text, by subject, with short names."""
     prefixes = {name: facts_terms.PREFIXES[name] for name in _PREFIXES}
-    text = serialize(statements, format=RdfFormat.TRIG, prefixes=prefixes)
-    assert text is not None
-    return text
+    graphs = {quad.graph_name.value for quad in statements if isinstance(quad.graph_name, NamedNode)}
+    if len(graphs) == 1:
+        prefixes[""] = f"{graphs.pop()}/"
+    place: dict[str, int] = {}
+    for quad in statements:
+        place.setdefault(str(quad.subject), len(place))
+    by_subject = sorted(statements, key=lambda quad: place[str(quad.subject)])
+    return serialize(by_subject, format=RdfFormat.TRIG, prefixes=prefixes) or b""
