@@ -44,7 +44,7 @@ class Context(Citations):
             return self._rows[slug]
         for kind in (facts.enzymes, facts.reactions, facts.compounds, facts.outlets, facts.hosts):
             if slug in kind:
-                return str(kind[slug].label)  # type: ignore[index]
+                return str(kind[slug].label)
         return slug
 
     def cautions(self) -> tuple[str, ...]:

@@ -10,6 +10,7 @@ import headrace
 from headrace.outputs.cli.shared import Format, FormatOption, printed
 from headrace.outputs.cli.terminal import emit
 from headrace.pages.model import Column, Page, Table
+from headrace.pages.numbers import counted
 
 if TYPE_CHECKING:
     from headrace.hooks.manager import Manager
@@ -36,11 +37,15 @@ def page(manager: Manager) -> Page:
     return Page(
         title="Plugins",
         subject=(),
-        verdict=f"{len(table.rows)} plugins are loaded, {len(refused.rows) or 'none'} refused.",
+        verdict=f"{counted(len(table.rows), 'plugin')} {_are(table)} loaded, {len(refused.rows)} {_are(refused)} refused.",
         blocks=(table, refused) if refused.rows else (table,),
         main=table,
         versions=f"headrace {headrace.__version__}",
     )
+
+
+def _are(table: Table) -> str:
+    return "is" if len(table.rows) == 1 else "are"
 
 
 def _loaded(manager: Manager) -> Table:
