@@ -171,6 +171,8 @@ def test_a_product_that_only_an_organelle_has_is_drawn_there() -> None:
 def test_options_are_handed_on() -> None:
     text = 'product = "acid"\nrate = "1 mmol/gDW/h"\noptions = { chain-length = 16, share = { a = 0.5 } }'
     assert outlet(text).options == {"chain-length": 16, "share": {"a": 0.5}}
+    weighed = text.replace("1 mmol", "0.1 g")
+    assert "whatever its options say" in messages(resolve(stated("[[outlet]]\n" + weighed)), "mass-to-moles")[-1]
     case = resolve(stated("[plugin.loom]\nthreads = 3"))
     assert case.plugin_options == {"loom": {"threads": 3}}
 

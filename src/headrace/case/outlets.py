@@ -119,6 +119,9 @@ def _demand(
             raise InputError(
                 f"{outlet.label} has no molar mass of its own", read=getattr(stated, name), accepted=accepted
             )
+        if by_mass and stated.options:
+            words = f"{outlet.label} is weighed as {form.label}, {float(form.mass or 0):.2f} g/mol, whatever its options say"
+            sheet.say("caution", "mass-to-moles", outlet.slug, words)
         moles = _moles(sheet, amount, form.mass or Fraction(1), medium, stated) * factor
     share = amount.unit in ("mol/mol", "g/g")
     return Demand(
