@@ -97,7 +97,7 @@ def facts(**contents: int) -> Facts:
              "water": ("wet",), "proton": ("sour",), "motive-proton": ("motive",), "ammonium": ()}
     return Facts("world", {c.slug: c for c in COMPOUNDS}, {r.slug: r for r in REACTIONS}, {}, {"host": host}, {},
                  {"rt": Route("rt", "rt", "product", ("turn",), SEEN)}, {"paper": Source("paper", "solved on paper")},
-                 {}, {}, y | {k: Fraction(v) for k, v in contents.items()}, roles)
+                 {}, {}, contents=y | {k: Fraction(v) for k, v in contents.items()}, roles=roles)
 
 
 def case(rate: float | None = 2.0, uptake: float | None = None, maintenance: float = 5.0, off: tuple[str, ...] = (),

@@ -1,8 +1,8 @@
 """Why a case can't be met, and which smallest changes would open it; every proposed change is verified by solving.
 
 Shortage: an elastic LP that lets every anchor, precursor and drawn pool be topped up, each mole at its carbon count,
-    minimise  sum c_p s_p   subject to   S v + s = d,   s >= 0;
-its s_p are what is missing. Repairs: one network holds every closed row, absent refill and possible supplement, all
+    minimise  sum c_p s_p   subject to   S v + s = d,   s >= 0
+(three times that for pools that are only drawn, so that the root is named); its s_p are what is missing. Repairs: one network holds every closed row, absent refill and possible supplement, all
 shut; each is opened alone and kept if the case becomes feasible. Where no single change does, a smallest joint set is
 found by deletion from all of them.
 """
@@ -17,7 +17,7 @@ import numpy as np
 
 from headrace.network import aim
 from headrace.network.build import Network, build, cytosol_of, medium_of, programme
-from headrace.network.refills import closed_refills
+from headrace.network.refills import Refill, closed_refills, steps
 from headrace.solve.linear import INFINITY, Session
 from headrace.values.answers import Repair, Shortage
 from headrace.values.case import Case, Finding, Level, Supplement
@@ -61,7 +61,9 @@ def shortage(net: Network) -> tuple[tuple[Shortage, ...], list[tuple[str, float]
     session = Session(programme(net, extra=extra))
     cost, start = np.zeros(session.columns), session.columns - len(extra)
     for i, p in enumerate(tops):
-        cost[start + i] = 1.0 + facts.compounds[net.pools[p][0]].formula.get("C", 0)
+        compound = facts.compounds[net.pools[p][0]]
+        root = 1.0 if compound.anchor or compound.precursor else 3.0  # name the pool at the root, not what hangs on it
+        cost[start + i] = root * (1.0 + compound.formula.get("C", 0))
     for i, p in enumerate(spare):
         cost[start + len(tops) + i] = 1.0 + facts.compounds[net.pools[p][0]].formula.get("C", 0)
     found = session.minimise(cost)
@@ -165,13 +167,43 @@ def widen(net: Network) -> tuple[Network, list[Candidate]]:
         case, rows=rows, levels=levels, supplements=case.supplements + tuple(Supplement(c) for c in extra),
         releases=case.releases + tuple(out)))
     found = [Candidate(w, kind, tuple(wide.columns_of([slug])), refill) for slug, (w, kind, refill) in words.items()]
+    found += _chains(wide, case, refills) + _regulators(wide, case)
     for kind, verb, names in (("enter", "supplement", extra), ("leave", "release", out)):
         for name in names:
             columns = tuple(j for j, c in enumerate(wide.columns) if c.kind == kind and c.name == name)
             found.append(Candidate(f"{verb} {facts.compounds[name].label}", verb, columns, False))
     found = [c for c in found if c.columns]
-    order = {"reopen": 0, "express": 1, "add": 2, "supplement": 3, "release": 4}
+    order = {"reopen": 0, "regulator": 1, "express": 1, "add": 2, "supplement": 3, "release": 4}
     return wide, sorted(found, key=lambda c: (not c.refill, order.get(c.kind, 5), c.words))
+
+
+def _chains(wide: Network, case: Case, refills: tuple[Refill, ...]) -> list[Candidate]:
+    """A closed refill together with the closed steps that alone feed it (malate synthase with isocitrate lyase)."""
+    found = []
+    for refill in refills:
+        if refill.row not in case.rows or refill.kind == "direction":
+            continue
+        closed = [s for s in steps(wide, refill) if s in case.levels and case.levels[s].level == "off"]
+        if closed:
+            rows = [refill.row, *closed]
+            text = " with ".join(case.rows[r].label for r in rows)
+            reasons = "; ".join(dict.fromkeys(case.levels[r].reason for r in rows))
+            found.append(Candidate(f"open {text} ({reasons})", "express", tuple(wide.columns_of(rows)), True))
+    return found
+
+
+def _regulators(wide: Network, case: Case) -> list[Candidate]:
+    """Regulators whose removal alone turns closed rows on."""
+    rules = {rule.slug: rule for rule in wide.host.expressions if rule.removed_regulators and rule.level == "on"}
+    opened: dict[str, list[str]] = {}
+    for slug, row in case.rows.items():
+        if case.levels[slug].level != "off" or case.levels[slug].kind == "removed":
+            continue
+        for rule in (rules[name] for name in row.expression if name in rules):
+            for gene in rule.removed_regulators:
+                opened.setdefault(gene, []).append(slug)
+    return [Candidate(f"remove the regulator {gene} (turns on {', '.join(case.rows[r].label for r in rows)})", "regulator",
+                      tuple(wide.columns_of(rows)), True) for gene, rows in sorted(opened.items())]
 
 
 def _reopen_words(case: Case, slug: str, level: Level) -> tuple[str, str]:
