@@ -68,6 +68,11 @@ def test_counts_and_numbers_are_exact(facts: Facts) -> None:
     )
 
 
+def test_contents_are_derived(facts: Facts) -> None:
+    assert {slug: content for slug, content in facts.contents.items() if content} == {"oxaloacetate": 1}
+    assert set(facts.contents) == set(facts.compounds)
+
+
 def test_compounds(facts: Facts) -> None:
     oxaloacetate = facts.compounds["oxaloacetate"]
     assert oxaloacetate.formula == {"C": 4, "H": 2, "O": 5} and oxaloacetate.charge == -2
@@ -112,12 +117,13 @@ def test_outlets_routes_and_words(facts: Facts) -> None:
     outlet = facts.outlets["oxaloacetic-acid"]
     assert outlet.draws == {"oxaloacetate": 1} and outlet.family == "organic-acids"
     assert [(form.label, form.default) for form in outlet.forms] == [("disodium salt", False), ("free acid", True)]
-    route = facts.routes["oxaloacetate-by-carboxylation"]
-    assert (route.makes, route.hosts) == ("oxaloacetate", ("paper-cell",))
-    assert route.uses == ("carbonic-anhydrase", "pyruvate-carboxylase")
+    route = facts.routes["bicarbonate-from-carbon-dioxide"]
+    assert (route.makes, route.hosts, route.uses) == ("bicarbonate", ("paper-cell",), ("carbonic-anhydrase",))
     assert facts.sources["invented-organism"].doi == "10.1000/paper"
     assert facts.units["mmol-per-gdw"] == "mmol/gDW" and facts.circumstances == {"acid-stress": "acid stress"}
-    assert facts.roles == {"oxygen": ("oxygen",), "energy-release": ("pyruvate-respiration",)}
+    assert facts.roles["energy-release"] == ("pyruvate-respiration",)
+    assert facts.roles["inorganic-carbon"] == ("bicarbonate", "carbon-dioxide")
+    assert "electron-carrier" not in facts.roles
     assert facts.electron_pairs == {"atp": "adp"}
 
 
@@ -220,7 +226,7 @@ BROKEN = [
     (HOST + "host.ttl", "hr:host h:paper-cell", "hr:host h:other", "host/paper-cell/no-oxaloacetate-decarboxylase", "host/other"),
     (HOST + "host.ttl", "hr:taxon obo:NCBITaxon_32644", "hr:taxon obo:Taxon_1", "host/paper-cell", "obo:Taxon_1; accepted"),
     (HOST + "host.ttl", "h:paper-cell a hr:Host", "h:other-cell a hr:Host", "", "stands below no hr:Host"),
-    ("routes/all.ttl", "r:pyruvate-carboxylase", "r:unheard-of", "route/oxaloacetate-by-carboxylation", "reaction/unheard-of"),
+    ("routes/all.ttl", "r:carbonic-anhydrase", "r:unheard-of", "route/bicarbonate-from-carbon-dioxide", "reaction/unheard-of"),
     ("routes/all.ttl", '"C4H4O5"', '"C4H4O5.H2O"', "outlet/oxaloacetic-acid", "plain formula"),
     ("ontology/words.ttl", "hr:member c:oxygen", "hr:member c:air", "role/oxygen", "compound/air: no such"),
     ("enzymes/all.ttl", "hr:cofactor c:biotin", "hr:cofactor c:biotine", "enzyme/pyruvate-carboxylase", "compound/biotine"),

@@ -33,6 +33,11 @@ def build(files: Sequence[FactFile], version: str) -> Facts:
     if facts is None:
         first, *others = sorted(faults, key=lambda fault: (fault.file, fault.node, fault.rule))
         raise FactsError(first.message, file=first.file, node=first.node, others=len(others))
+    return complete(facts)
+
+
+def complete(facts: Facts) -> Facts:
+    """The facts with what is derived from them. Raises FactsError where routes contradict one another."""
     return msgspec.structs.replace(facts, contents=contents(facts))
 
 

@@ -68,10 +68,10 @@ def write(folder: Path, facts: Facts) -> bool:
 
 @cache
 def code_version() -> str:
-    """Hash of the code that builds facts: this package and the shape of the values."""
+    """Hash of the code that builds facts: this package, the shape of the values and the solver of contents."""
     here = Path(__file__).resolve().parent
     digest = hashlib.sha256()
-    for path in [*sorted(here.glob("*.py")), here.parent / "values" / "facts.py"]:
+    for path in [*sorted(here.glob("*.py")), here.parent / "values" / "facts.py", here.parent / "solve" / "exact.py"]:
         digest.update(path.read_bytes())
     return digest.hexdigest()[:8]
 

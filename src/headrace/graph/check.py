@@ -14,7 +14,7 @@ from pyoxigraph import Quad
 
 from headrace import paths
 from headrace.errors import FactsError
-from headrace.graph.build import collect
+from headrace.graph.build import collect, complete
 from headrace.graph.exceptions import Exceptions
 from headrace.graph.fault import Fault
 from headrace.graph.files import FactFile, fact_files, normalised, turtle_paths, version
@@ -25,6 +25,7 @@ from headrace.graph.slugs import unlike_names
 from headrace.graph.turtle import write
 from headrace.values.facts import Facts
 
+REMEDY = "python -m headrace.graph.turtle FILE writes it"
 Proof = Callable[[Facts], Iterable[Fault]]
 
 
@@ -57,10 +58,20 @@ def check(
     found += broken_rules(read_rules(rules or home / "rules"), store_of(statements), graph)
     found += unlike_names(graph)
     if facts is not None:
-        for proof in proofs:
-            found += proof(facts)
+        found += _proven(facts, proofs)
     exceptions = Exceptions.read(homes)
     return sorted(exceptions.apply(found), key=lambda fault: (fault.file, fault.node, fault.rule, fault.message))
+
+
+def _proven(facts: Facts, proofs: Sequence[Proof]) -> Iterable[Fault]:
+    """What only whole facts can show: contents that fit every route, and the caller's proofs."""
+    try:
+        whole = complete(facts)
+    except FactsError as error:
+        yield Fault("contents", error.node, error.message, error.file)
+        return
+    for proof in proofs:
+        yield from proof(whole)
 
 
 def _parsed(files: Iterable[FactFile]) -> tuple[dict[str, list[Quad]], list[Fault]]:
@@ -96,5 +107,5 @@ def _first_difference(have: str, want: str) -> str:
     lines = zip(have.split("\n"), want.split("\n"), strict=False)
     for number, (old, new) in enumerate(lines, start=1):
         if old != new:
-            return f"line {number} reads {old!r}; the canonical form has {new!r}"
-    return "ends otherwise than the canonical form"
+            return f"line {number} reads {old!r}, the canonical form {new!r}; {REMEDY}"
+    return f"ends otherwise than the canonical form; {REMEDY}"
