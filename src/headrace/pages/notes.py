@@ -27,5 +27,6 @@ def collected(result: Result) -> tuple[Finding, ...]:
 
 def sentence(context: Context, finding: Finding) -> str:
     """A finding in one line: level, what it is about, what it says, citation numbers."""
-    about = f"{context.name(finding.about)}: " if finding.about else ""
+    name = context.name(finding.about)
+    about = f"{name}: " if name and not finding.message.startswith((name, f"the {name}")) else ""
     return " ".join(part for part in (f"{finding.level}: {about}{finding.message}", context.cite(finding.source)) if part)

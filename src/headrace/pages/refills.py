@@ -12,6 +12,7 @@ from headrace.pages.verdicts import refills as verdict
 from headrace.values.answers import RefillAnswer, RefillRow, Result
 
 _PER_TURN = "mol/mol"
+_IDLE = 1e-5
 
 
 def page(result: Result, headrace: str, rates: bool = False) -> Page:
@@ -77,7 +78,7 @@ def requirement(context: Context, answer: RefillAnswer) -> Table:
     columns = (
         Column("group"),
         Column("refill"),
-        Column("in"),
+        Column("in", detail=True),
         *(Column(title, RATE, number=True) for title in ("least", "nominal", "most", "capacity")),
         Column("cover", number=True),
         Column("necessary"),
@@ -94,16 +95,16 @@ def requirement(context: Context, answer: RefillAnswer) -> Table:
 
 def _requirement_row(context: Context, answer: RefillAnswer, row: RefillRow) -> tuple[Cell, ...]:
     recalled = row.reading == "recalled"
-    name = context.mark(chain(row), recalled)
+    name = context.mark(chain(context, row), recalled)
     values = (row.least, row.nominal, row.most, row.capacity, row.cover, row.necessary)
     facts = (", ".join(row.ec), row.genes, ", ".join(context.compound(each) for each in row.cofactors))
     place = context.place(row.compartment)
     return (group_label(answer, row.group), name, place, *values, *facts, row.reading, context.cite(row.source))
 
 
-def chain(row: RefillRow) -> str:
-    """A refill's label; a chain names its steps."""
-    return row.label if len(row.steps) < 2 else f"{row.label} (a chain of {len(row.steps)} steps)"
+def chain(context: Context, row: RefillRow) -> str:
+    """A refill's label; a chain names the steps whose flux it forces."""
+    return f"{row.label} with {joined([context.name(step) for step in row.steps])}" if row.steps else row.label
 
 
 def group_label(answer: RefillAnswer, group: str) -> str:
@@ -146,9 +147,9 @@ def cost(context: Context, answer: RefillAnswer) -> Table:
         Column("CO2 fixed", RATE, number=True),
     )
     rows = tuple(
-        (row.label, row.skeletons_per_turn, row.atp, row.carbon_fixed, _times(row, row.atp), _times(row, row.carbon_fixed))
+        (chain(context, row), row.skeletons_per_turn, row.atp, row.carbon_fixed, _times(row, row.atp), _times(row, row.carbon_fixed))
         for row in answer.refills
-        if row.open and (row.nominal or row.most)
+        if row.open and max(row.nominal or 0.0, row.most or 0.0) > _IDLE
     )
     return Table("cost", "Cost of the refills", columns, rows, empty="No refill runs.")
 

@@ -6,6 +6,7 @@ from typing import Annotated
 
 import typer
 
+from headrace.outputs.cli.saving import AgentOption, ResultsOption, SaveOption, StoreOption, wish
 from headrace.outputs.cli.shared import Format, FormatOption, ScenarioFile, answer
 
 Product = Annotated[
@@ -13,9 +14,18 @@ Product = Annotated[
 ]
 
 
-def ceiling(scenario: ScenarioFile, outlet: Product = "", format: FormatOption = Format.table) -> int:
+def ceiling(
+    scenario: ScenarioFile,
+    outlet: Product = "",
+    format: FormatOption = Format.table,
+    save: SaveOption = False,
+    results: ResultsOption = None,
+    store: StoreOption = "",
+    agent: AgentOption = "",
+) -> int:
     """The largest yields of an outlet, and what binds."""
-    return answer(scenario, lambda desk, bar: desk.ceiling(scenario, outlet), format)
+    wished = wish(save, results, store, agent)
+    return answer(scenario, lambda desk, bar: desk.ceiling(scenario, outlet), format, wish=wished)
 
 
 def register(app: typer.Typer) -> None:

@@ -3,16 +3,15 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterator
 from contextlib import contextmanager
 from threading import Timer
-from typing import TYPE_CHECKING, TypeVar
+from typing import TYPE_CHECKING
 
 if TYPE_CHECKING:
     from rich.progress import Progress
 
 _MOMENT = 0.7
-T = TypeVar("T")
 
 
 class Bar:
@@ -70,12 +69,3 @@ def working(what: str, total: int | None = None) -> Iterator[Bar]:
         yield bar
     finally:
         bar.stop()
-
-
-def each(items: Iterable[T], what: str) -> Iterator[T]:
-    """The items, with a bar that moves on as they are used up."""
-    listed = list(items)
-    with working(what, len(listed)) as bar:
-        for item in listed:
-            yield item
-            bar.step()

@@ -6,17 +6,27 @@ from typing import Annotated
 
 import typer
 
+from headrace.outputs.cli.saving import AgentOption, ResultsOption, SaveOption, StoreOption, wish
 from headrace.outputs.cli.shared import Format, FormatOption, ScenarioFile, answer
 
 Rates = Annotated[bool, typer.Option("--rates", help="Add the rate of every reaction.")]
 
 
-def refills(scenario: ScenarioFile, format: FormatOption = Format.table, rates: Rates = False) -> int:
+def refills(
+    scenario: ScenarioFile,
+    format: FormatOption = Format.table,
+    rates: Rates = False,
+    save: SaveOption = False,
+    results: ResultsOption = None,
+    store: StoreOption = "",
+    agent: AgentOption = "",
+) -> int:
     """What must be put back, by which refill, at what cost.
 
     Ledger, requirement per refill and group, closed refills, cost, cover, findings.
     """
-    return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say), format, rates)
+    wished = wish(save, results, store, agent)
+    return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say), format, rates, wished)
 
 
 def register(app: typer.Typer) -> None:

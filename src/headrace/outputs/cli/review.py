@@ -14,6 +14,7 @@ from headrace.errors import InputError
 from headrace.outputs import files
 from headrace.outputs.cli import shared
 from headrace.outputs.cli.progress import working
+from headrace.outputs.cli.saving import AgentOption, ResultsOption, SaveOption, StoreOption, keep, wish
 from headrace.outputs.cli.terminal import emit
 from headrace.values.answers import Document
 
@@ -26,22 +27,32 @@ Folder = Annotated[Path, typer.Option("-o", "--output", metavar="DIR", help="Fol
 Force = Annotated[bool, typer.Option("--force", help="Also replace files that Headrace did not write.")]
 
 
-def review(scenarios: Scenarios, output: Folder, force: Force = False) -> int:
+def review(
+    scenarios: Scenarios,
+    output: Folder,
+    force: Force = False,
+    save: SaveOption = False,
+    results: ResultsOption = None,
+    store: StoreOption = "",
+    agent: AgentOption = "",
+) -> int:
     """The design-review documents.
 
     Markdown with all tables, and the tables as CSV files.
     """
+    wished = wish(save, results, store, agent)
     desk = shared.desk()
     with working("review", len(scenarios)) as bar:
         asked = [desk.scenario(path) for path in scenarios]  # all are read before any is worked on
-        results = []
+        found = []
         for path, question in zip(scenarios, asked, strict=True):
             bar.say(path.name)
-            results.append(answered(desk, question))
+            found.append(answered(desk, question))
             bar.step()
-    written = files.write(output, documents(desk, results, scenarios), force)
+    keep([each for result in found for each in (result, *result.related)], wished)
+    written = files.write(output, documents(desk, found, scenarios), force)
     emit("".join(f"{path}\n" for path in written))
-    return max(shared.exit_code(result) for result in results)
+    return max(shared.exit_code(result) for result in found)
 
 
 def answered(desk: Desk, question: object) -> Result:

@@ -12,6 +12,7 @@ import typer
 import headrace
 from headrace.outputs.cli import seam
 from headrace.outputs.cli.progress import Bar, working
+from headrace.outputs.cli.saving import Wish, keep
 from headrace.outputs.cli.terminal import emit, width
 
 if TYPE_CHECKING:
@@ -42,10 +43,13 @@ def desk() -> Desk:
     return Desk()
 
 
-def answer(scenario: Path, ask: Callable[[Desk, Bar], Result], format: Format, rates: bool = False) -> int:
-    """Ask, print, and give the exit code. ask gets the desk and the bar that shows while it takes long."""
+def answer(
+    scenario: Path, ask: Callable[[Desk, Bar], Result], format: Format, rates: bool = False, wish: Wish | None = None
+) -> int:
+    """Ask, save if wished, print, and give the exit code. ask gets the desk and the bar that shows while it takes long."""
     with working(scenario.name) as bar:
         result = ask(desk(), bar)
+    keep([result], wish or Wish(), rates)
     emit(rendered(result, format, rates), exact=format is not Format.table)
     return exit_code(result)
 
