@@ -18,7 +18,7 @@ from headrace.network.ceiling import ceiling as find_ceiling
 from headrace.network.grows import grows as find_growth
 from headrace.network.requirement import drain_rows
 from headrace.network.routes import RouteBook
-from headrace.values.answers import RefillAnswer, Result
+from headrace.values.answers import Draw, RefillAnswer, Result
 from headrace.values.case import Case, Scenario
 from headrace.values.changes import Change
 from headrace.values.facts import Facts
@@ -66,6 +66,7 @@ class Desk:
         progress("drains")
         draws = self.plugins.drains(case, _outlets(case), RouteBook(self.facts, case))
         progress("refills")
+        case = _drawing(case, draws)
         network = build(self.facts, case)
         bench = Bench(self.facts, lambda changes: self.case(scenario, changes=changes))
         merged = self.plugins.refills(case, network, draws, bench)
@@ -81,7 +82,9 @@ class Desk:
         """Largest yields of one outlet of the scenario (default: its only one). growth in 1/h."""
         case = self.case(question)
         number = cases.outlet_number(case, self.facts, outlet)
-        answer = find_ceiling(self.facts, case, self.case(question, opened=True), number, growth)
+        draws = self.plugins.drains(case, case.demands, RouteBook(self.facts, case))
+        wide = _drawing(self.case(question, opened=True), draws)
+        answer = find_ceiling(self.facts, _drawing(case, draws), wide, number, growth)
         return self._result("ceiling", case, (), (), answer, case.findings + answer.findings)
 
     def grows(self, question: Question) -> Result:
@@ -99,6 +102,13 @@ def _outlets(case: Case) -> Any:
     """The outlets to drain: those asked for and, where the case grows, biomass."""
     grows = case.growth is None or case.growth > 0
     return case.demands + (cases.biomass(case),) if grows else case.demands
+
+
+def _drawing(case: Case, draws: Sequence[Draw]) -> Case:
+    """The case with each outlet drawing what its plugin says that one mole is made of."""
+    made = {name: draw.draws for draw in draws for name in draw.scale if draw.draws}
+    demands = tuple(msgspec.structs.replace(d, draws=made.get(f"outlet.{i}", d.draws)) for i, d in enumerate(case.demands))
+    return msgspec.structs.replace(case, demands=demands)
 
 
 def _scalars(case: Case) -> dict[str, float]:
