@@ -89,6 +89,14 @@ class RouteBook:
         """The routes that this host may use for a compound, the one in force first."""
         return tuple(self._routes.get(compound, ()))
 
+    def available(self) -> tuple[Route, ...]:
+        """All routes that this host may use, by slug."""
+        return tuple(sorted((route for found in self._routes.values() for route in found), key=lambda route: route.slug))
+
+    def follows(self, compound: str) -> bool:
+        """Whether a pool has a route here whose every step the case expresses, so that it can be followed further back."""
+        return any(all(self._level(reaction) in ("on", "basal") for reaction in r.uses) for r in self.routes(compound)[:1])
+
     def vector(
         self, compound: str, place: str = "cytosol", *, chosen: Iterable[str] = (), through: Iterable[str] = ()
     ) -> RouteVector:

@@ -1,0 +1,1 @@
+"""What outlets take: one file per family, all on the exact route vectors of the core (see `base`)."""
