@@ -110,9 +110,10 @@ class Builder:
             if found and not field.link:
                 self.graph.add(subject, field.property, found[0])
                 continue
-            if isinstance(value, Fraction):  # a number to compute with, and the exact text beside it
+            if isinstance(value, Fraction):  # per mole of outlet: a number to compute with, and the exact text beside it
+                self.graph.add(subject, f"{field.property}PerMole", literal(float(value)))
                 self.graph.add(subject, f"{field.property}Exact", Literal(str(value)))
-                value = float(value)
+                continue
             unknown = field.finds and not field.link  # a text where an IRI was expected: said under another property
             self.graph.add(subject, field.property + ("Name" if unknown else ""), _labelled(field, value))
             for iri in found:

@@ -82,5 +82,6 @@ FIELDS: dict[str, Field] = {
     "origin": Field(HR + "originNote"),
     "scale": Field(HR + "scaledBy"),
     "genes": Field(HR + "genes"),
+    "supplied": Field(HR + "suppliedSkeletons"),
     "change": Field(HR + "change"),
 }
