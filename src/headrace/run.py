@@ -16,7 +16,7 @@ from headrace.hooks.manager import Manager
 from headrace.network.build import build
 from headrace.network.ceiling import ceiling as find_ceiling
 from headrace.network.grows import grows as find_growth
-from headrace.network.requirement import drain_rows
+from headrace.network.requirement import drain_rows, rate_ranges
 from headrace.network.routes import RouteBook
 from headrace.values.answers import Draw, RefillAnswer, Result
 from headrace.values.case import Case, Scenario
@@ -59,8 +59,8 @@ class Desk:
         findings = self.plugins.checks(case, draws, (), rows)
         return self._result("drains", case, draws, rows, None, case.findings + findings)
 
-    def refills(self, question: Question, progress: Progress = lambda words: None) -> Result:
-        """The ledger, the requirement of each refill, and why closed ones are closed."""
+    def refills(self, question: Question, progress: Progress = lambda words: None, ranges: bool = False) -> Result:
+        """The ledger, the requirement of each refill, and why closed ones are closed. ranges: of every rate, too."""
         scenario = self.scenario(question)
         case = self.case(scenario)
         progress("drains")
@@ -72,6 +72,8 @@ class Desk:
         merged = self.plugins.refills(case, network, draws, bench)
         progress("checks")
         answer: RefillAnswer = merged.answer
+        if ranges and answer.answer == "feasible":
+            answer = msgspec.structs.replace(answer, rates=rate_ranges(network))
         rows = answer.drains or drain_rows(self.facts, draws, answer.scalars or _scalars(case))
         answers = (answer, *(other for _, other in merged.others))
         said = self.plugins.checks(case, draws, answers, rows)

@@ -9,6 +9,7 @@ from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence
 
 import numpy as np
+from msgspec.structs import replace
 
 from headrace.network import aim, repair
 from headrace.network.build import Network, programme
@@ -28,6 +29,8 @@ from headrace.values.answers import (
     DrainRow,
     FeedRow,
     GroupRow,
+    Ledger,
+    LedgerRow,
     RateRow,
     RefillAnswer,
     RefillRow,
@@ -63,16 +66,46 @@ def require(net: Network, draws: Sequence[Draw] = ()) -> RefillAnswer:
     opened = open_refills(net)
     groups = _groups(net, solved, opened)
     rows = [_row(net, solved, r, groups) for r in opened] + [_closed(net, r) for r in closed_refills(net)]
+    law = _by_group(ledger(net, rates, solved.scalars, draws), rows, [g for g, _ in groups.values()])
     inside = crossings(net, solved.x) + free_crossings(net, solved.x, solved.scalars)
     out = drawn(net, solved.scalars)
     least = aim.least_carbon(net) if not aim.is_free(net) else None
     return RefillAnswer(
         answer="feasible", aim=solved.words, drains=drain_rows(net.facts, draws, solved.scalars),
-        ledger=ledger(net, rates, solved.scalars, draws), refills=tuple(rows), groups=tuple(g for g, _ in groups.values()),
+        ledger=law, refills=tuple(rows), groups=tuple(g for g, _ in groups.values()),
         feed=_feeds(net, rates), crossings=inside, drawn=out, shortage=(), repairs=(), closure=closure(net, inside + out),
         removals=_removals(net, solved), rates=_rates(net, solved), energy=_energy(net, solved), scalars=solved.scalars,
         surplus_carbon=None if least is None else solved.carbon - least,
         cycling_cap=None if not net.case.slack else net.case.slack * solved.total, design_cover=design_cover(net))
+
+
+def _by_group(law: Ledger, rows: Sequence[RefillRow], groups: Sequence[GroupRow]) -> Ledger:
+    """The ledger with refilled rows by requirement: a member where its share is known, else its group as one row.
+
+    Which member of a group a solution happens to use means nothing; the group's total does.
+    """
+    kept = [r for r in law.rows if r.kind != "refilled"]
+    for group in groups:
+        members = [r for r in rows if r.open and r.group == group.group]
+        if all(r.nominal is not None for r in members):
+            kept += [LedgerRow("right", "refilled", r.label, r.compartment, (r.nominal or 0.0) * r.skeletons_per_turn)
+                     for r in members if r.nominal]
+        elif group.nominal:
+            kept.append(LedgerRow("right", "refilled", f"{group.label}, split open", members[0].compartment,
+                                  group.nominal * members[0].skeletons_per_turn))
+    return replace(law, rows=tuple(sorted(kept, key=lambda r: (r.side, r.kind, -r.skeletons))))
+
+
+def rate_ranges(net: Network) -> tuple[RateRow, ...]:
+    """The net rate of every row at the aim with its least and most over the optima (within the case's slack)."""
+    solved = aim.solve(net)
+    if not isinstance(solved, aim.Aimed):
+        return ()
+    found = []
+    for row in _rates(net, solved):
+        weights = {j: float(c.sign) for j, c in enumerate(net.columns) if c.kind in ("row", "spill") and c.name == row.reaction}
+        found.append(RateRow(row.reaction, row.rate, *solved.range(weights)))
+    return tuple(found)
 
 
 def _infeasible(net: Network, draws: Sequence[Draw]) -> RefillAnswer:
@@ -185,12 +218,8 @@ def _row(net: Network, solved: aim.Aimed, refill: Refill, groups: Mapping[str, t
         nominal, reason = (low + high) / 2, "fixed by the balance"
     capacity = _capacity(net, [refill.row])
     base = _idle(net, refill, steps(net, refill, list(solved.x[: len(net.columns)])))
-    return _replace(base, least=max(low, 0.0), nominal=nominal, most=high, split=reason, capacity=capacity,
+    return replace(base, least=max(low, 0.0), nominal=nominal, most=high, split=reason, capacity=capacity,
                     cover=_cover(capacity, nominal), necessary=aim.necessary(net, [refill.column]))
-
-
-def _replace(row: RefillRow, **fields: object) -> RefillRow:
-    return RefillRow(**{**{f: getattr(row, f) for f in row.__struct_fields__}, **fields})
 
 
 def _closed(net: Network, refill: Refill) -> RefillRow:

@@ -9,7 +9,7 @@ import typer
 from headrace.outputs.cli.saving import AgentOption, ResultsOption, SaveOption, StoreOption, wish
 from headrace.outputs.cli.shared import Format, FormatOption, ScenarioFile, answer
 
-Rates = Annotated[bool, typer.Option("--rates", help="Add the rate of every reaction.")]
+Rates = Annotated[bool, typer.Option("--rates", help="Add the rate of every reaction with its range over the optima.")]
 
 
 def refills(
@@ -26,7 +26,7 @@ def refills(
     Ledger, requirement per refill and group, closed refills, cost, cover, findings.
     """
     wished = wish(save, results, store, agent)
-    return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say), format, rates, wished)
+    return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say, rates), format, rates, wished)
 
 
 def register(app: typer.Typer) -> None:
