@@ -82,7 +82,7 @@ class RouteBook:
             if not route.hosts or host in route.hosts:
                 self._routes.setdefault(route.makes, []).append(route)
         for found in self._routes.values():
-            found.sort(key=self._rank)
+            found.sort(key=self.rank)
         self._kept: dict[tuple[object, ...], RouteVector] = {}
 
     def routes(self, compound: str) -> tuple[Route, ...]:
@@ -112,7 +112,8 @@ class RouteBook:
         key = (tuple(sorted(placed.items())), tuple(sorted(chosen)), tuple(sorted(through)))
         if key not in self._kept:
             rates, used = self._solve(*key)
-            self._kept[key] = self._describe(placed, rates, totals(self, rates, placed), used)
+            free = self.boundary.free - set(through)
+            self._kept[key] = self._describe(placed, rates, totals(self, rates, placed, free), used)
         return self._kept[key]
 
     def _describe(
@@ -147,7 +148,7 @@ class RouteBook:
             return next(c.slug for c in self.host.compartments if c.role == "membrane")
         return place
 
-    def _rank(self, route: Route) -> tuple[int, int, bool, bool, str]:
+    def rank(self, route: Route) -> tuple[int, int, bool, bool, str]:
         """Routes whose steps the case expresses go first; then preferred ones; then the host's own; then by name."""
         levels = [self._level(reaction) for reaction in route.uses]
         return (levels.count(""), levels.count("off"), not route.preferred, not route.hosts, route.slug)

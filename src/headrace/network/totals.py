@@ -38,9 +38,12 @@ class Totals:
     crossings: dict[str, Fraction]
 
 
-def totals(book: Book, rates: Mapping[Step, Fraction], amounts: Mapping[Pool, Fraction]) -> Totals:
-    """The sums of a composition: rates (mole per step) and amounts (mole drawn per pool; negative = given back)."""
-    taken, given = _gross(book, rates, amounts)
+def totals(book: Book, rates: Mapping[Step, Fraction], amounts: Mapping[Pool, Fraction], free: frozenset[str]) -> Totals:
+    """The sums of a composition: rates (mole per step), amounts (mole drawn per pool; negative = given back).
+
+    free: the boundary compounds in force.
+    """
+    taken, given = _gross(book, rates, amounts, free)
     shuttled = _shuttled(book, rates, given)
     pools = []
     for pool in sorted({*taken, *given}):
@@ -59,23 +62,16 @@ def totals(book: Book, rates: Mapping[Step, Fraction], amounts: Mapping[Pool, Fr
     return Totals(tuple(pools), needs(book.facts, crossings), crossings)
 
 
-def _gross(book: Book, rates: Mapping[Step, Fraction], amounts: Mapping[Pool, Fraction]) -> tuple[Sums, Sums]:
+def _gross(
+    book: Book, rates: Mapping[Step, Fraction], amounts: Mapping[Pool, Fraction], free: frozenset[str]
+) -> tuple[Sums, Sums]:
+    """What single steps and the draw itself take from and give to the boundary pools."""
     taken: Sums = defaultdict(Fraction)
     given: Sums = defaultdict(Fraction)
-    made: Sums = defaultdict(Fraction)
-    for step, rate in rates.items():
-        for pool, count in terms_of(book.facts, book.host, step):
-            side = given if count * rate > 0 else taken
-            side[pool] += abs(count * rate)
-            made[pool] += count * rate
-    for pool, amount in amounts.items():
-        if pool[0] not in book.boundary.free and pool[0] not in book.boundary.form:
-            continue
-        (taken if amount > 0 else given)[pool] += abs(amount)
-    for pool in {*made}:
-        if pool[0] not in book.boundary.free and pool[0] not in book.boundary.form:
-            taken.pop(pool, None)
-            given.pop(pool, None)
+    moved = [(pool, -count * rate) for step, rate in rates.items() for pool, count in terms_of(book.facts, book.host, step)]
+    for pool, amount in [*moved, *amounts.items()]:
+        if pool[0] in free or pool[0] in book.boundary.form:
+            (taken if amount > 0 else given)[pool] += abs(amount)
     return taken, given
 
 
