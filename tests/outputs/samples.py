@@ -96,7 +96,10 @@ def case(**changes: object) -> Case:
         limits=(Limit("sugar carboxylase", ("fix",), 2.0),),
         energy={"maintenance": 2.0, "growth-associated-atp": 30.0},
         quantities=("upkeep",),
-        findings=(Finding("note", "names", "amber", "amber is written as free acid"),),
+        findings=(
+            Finding("note", "names", "amber", "amber is written as free acid"),
+            Finding("note", "assumed", "oxygen", "oxygen is not stated: aerobic is assumed"),
+        ),
         source_text='title = "AB-1"\n# ``` a fence in a comment\n',
         path="designs/ab-1.toml",
     )

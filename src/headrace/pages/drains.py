@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from fractions import Fraction
+
 from headrace.pages.context import CARBON, RATE, Context, versions
 from headrace.pages.model import Block, Column, Page, Row, Table
 from headrace.pages.notes import findings
@@ -9,6 +11,7 @@ from headrace.pages.numbers import counted, joined, show
 from headrace.values.answers import DrainRow, Draw, PoolTerm, Result
 
 _PER_MOLE = "mol/mol"
+_NEEDS = {"co2": "CO2", "quinol": "quinols", "one-carbon": "one-carbon units"}
 _BIOMASS = "Per mole of outlet; per gDW (in mmol) where the outlet is the cell itself."
 
 
@@ -57,20 +60,26 @@ def outlets(context: Context) -> Table:
         Column("outlet"),
         Column("skeletons per mole", "mol/mol", number=True),
         Column("skeletons", RATE, number=True),
-        Column("routes", detail=True),
-        Column("source", detail=True),
+        Column("routes", number=True),
     )
     rows = tuple(
-        (
-            context.mark(draw.label, draw.recalled),
-            draw.skeletons,
-            shares.get(draw.label),
-            ", ".join(_route(context, slug) for slug in draw.routes),
-            _route_sources(context, draw),
-        )
+        (context.mark(draw.label, draw.recalled), draw.skeletons, shares.get(draw.label), len(draw.routes))
         for draw in context.result.draws
     )
     return Table("outlets", "Skeletons by outlet", columns, rows, empty="No outlet.", note=_BIOMASS)
+
+
+def routes(context: Context) -> Table:
+    """The routes that each outlet's draw is made of, with reading and source."""
+    columns = tuple(Column(title) for title in ("outlet", "route", "makes", "reading", "source"))
+    known = context.facts.routes
+    rows = tuple(
+        (draw.label, known[slug].label, context.compound(known[slug].makes), *context.basis(known[slug].basis))
+        for draw in context.result.draws
+        for slug in draw.routes
+        if slug in known
+    )
+    return Table("routes", "Routes of the outlets", columns, rows, grouped=True, empty="No route is used.")
 
 
 def pools(context: Context) -> Table:
@@ -78,15 +87,21 @@ def pools(context: Context) -> Table:
     columns = (
         Column("outlet"),
         Column("pool"),
-        Column("in"),
+        Column("in", alike=True),
         *(Column(title, _PER_MOLE, number=True) for title in ("taken", "returned", "shuttled", "net")),
     )
     rows = tuple(
         (draw.label, context.compound(term.compound), context.place(term.place), *_term(term))
         for draw in context.result.draws
-        for term in draw.pools
+        for term in sorted(draw.pools, key=lambda term: _weight(context, term))
     )
     return Table("per-mole", "Per mole of outlet, by pool", columns, rows, grouped=True, empty="No pool is drawn on.")
+
+
+def _weight(context: Context, term: PoolTerm) -> tuple[Fraction, Fraction]:
+    """Pools with most skeletons come first, then those with most moles."""
+    net = abs(term.taken - term.returned)
+    return -net * context.facts.contents.get(term.compound, Fraction(0)), -net
 
 
 def _term(term: PoolTerm) -> Row:
@@ -98,7 +113,7 @@ def rates(context: Context) -> Table:
     columns = (
         Column("outlet"),
         Column("pool"),
-        Column("in"),
+        Column("in", alike=True),
         Column("taken", RATE, number=True),
         Column("returned", RATE, number=True),
         Column("shuttled", RATE, number=True, detail=True),
@@ -118,9 +133,15 @@ def rates(context: Context) -> Table:
             row.carbon_net,
             row.skeletons,
         )
-        for row in context.result.drains
+        for row in _in_order(context)
     )
     return Table("drains", "Drains at the stated rates, by pool", columns, rows, grouped=True, empty="Nothing is drained.")
+
+
+def _in_order(context: Context) -> list[DrainRow]:
+    """The rows of the outlets in the order in which they are asked for."""
+    order = [draw.label for draw in context.result.draws]
+    return sorted(context.result.drains, key=lambda row: order.index(row.outlet) if row.outlet in order else len(order))
 
 
 def needs(context: Context) -> Table:
@@ -128,7 +149,7 @@ def needs(context: Context) -> Table:
     draws = context.result.draws
     kinds = tuple(dict.fromkeys(kind for draw in draws for kind in draw.needs))
     columns = (Column("need"), *(Column(draw.label, _PER_MOLE, number=True) for draw in draws))
-    rows = tuple((context.compound(kind), *(draw.needs.get(kind) for draw in draws)) for kind in kinds)
+    rows = tuple((_NEEDS.get(kind, context.compound(kind)), *(draw.needs.get(kind) for draw in draws)) for kind in kinds)
     note = "Positive is used, negative is made on the way."
     return Table("needs", "Needs per mole of outlet", columns, rows, empty="No needs are known.", note=note)
 
@@ -145,7 +166,7 @@ def main(context: Context) -> Table:
         Column("skeletons", RATE, number=True),
     )
     rows: list[Row] = []
-    for row in context.result.drains:
+    for row in _in_order(context):
         term = terms.get((row.outlet, row.compound, row.compartment))
         exact: Row = _term(term) if term else (None,) * 4
         at_rate = (row.taken, row.returned, row.shuttled, row.net, row.carbon_net, row.skeletons)
@@ -163,13 +184,3 @@ def per_mole(draws: tuple[Draw, ...]) -> dict[tuple[str, str, str], PoolTerm]:
             sums = (old.taken + term.taken, old.returned + term.returned, old.shuttled + term.shuttled)
             terms[key] = PoolTerm(term.compound, term.place, *sums)
     return terms
-
-
-def _route(context: Context, slug: str) -> str:
-    known = context.facts.routes.get(slug)
-    return known.label if known else slug
-
-
-def _route_sources(context: Context, draw: Draw) -> str:
-    known = [context.facts.routes[slug] for slug in draw.routes if slug in context.facts.routes]
-    return context.cite_all(tuple(dict.fromkeys(source for route in known for source in route.basis.sources)))

@@ -31,7 +31,7 @@ def sentences(ledger: Ledger) -> tuple[str, ...]:
 
 def rows(context: Context, ledger: Ledger) -> Table:
     """Every row of the ledger, those that leave first."""
-    columns = (Column("side"), Column("kind"), Column("what"), Column("in"), Column("skeletons", RATE, number=True))
+    columns = (Column("side"), Column("kind"), Column("what"), Column("in", alike=True), Column("skeletons", RATE, number=True))
     ordered = sorted(ledger.rows, key=lambda row: row.side != "left")
     cells = tuple(
         (_SIDES.get(row.side, row.side), row.kind, context.name(row.what), context.place(row.compartment), row.skeletons)

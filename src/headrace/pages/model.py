@@ -11,12 +11,16 @@ Row = tuple[Cell, ...]
 
 
 class Column(Struct, frozen=True):
-    """unit: what every number of the column is in ("" = a plain ratio or text). detail: left out on a terminal."""
+    """unit: what every number of the column is in ("" = a plain ratio or text). detail: left out on a terminal.
+
+    alike: a place that goes to the title on a terminal when it is the same in all rows.
+    """
 
     title: str
     unit: str = ""
     number: bool = False
     detail: bool = False
+    alike: bool = False
 
     @property
     def heading(self) -> str:

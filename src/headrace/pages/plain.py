@@ -6,6 +6,7 @@ below one another.
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Iterator, Sequence
 from textwrap import wrap
 
@@ -58,32 +59,52 @@ def block(each: Block, width: int) -> list[str]:
 
 
 def _table(table: Table, width: int) -> Iterator[str]:
-    shown = [place for place, column in enumerate(table.columns) if not column.detail]
-    columns = [table.columns[place] for place in shown]
-    rows = [[row[place] for place in shown] for row in table.rows]
-    unit = _common_unit(columns)
-    yield f"{table.title} ({unit})" if unit and rows else table.title
+    title, columns, rows = _shown(table)
     if not rows:
+        yield title
         yield from wrap(table.empty or "None.", width, initial_indent=_INDENT, subsequent_indent=_INDENT)
         return
+    common, said = _units(columns)
+    yield from wrap(f"{title} ({said})" if said else title, width, subsequent_indent=_INDENT)
     groups = [show(row[0]) for row in rows] if table.grouped else None
     if groups is not None:
         columns, rows = columns[1:], [row[1:] for row in rows]
     indent = _INDENT * (2 if groups is not None else 1)
-    yield from _grid(columns, rows, groups, "" if unit is None else unit, width - len(indent), indent)
+    yield from _grid(columns, rows, groups, common, width - len(indent), indent)
     yield from wrap(table.note, width, initial_indent=_INDENT, subsequent_indent=_INDENT)
 
 
-def _common_unit(columns: Sequence[Column]) -> str | None:
-    units = {column.unit for column in columns if column.number and column.unit}
-    return units.pop() if len(units) == 1 else None
+def _shown(table: Table) -> tuple[str, list[Column], list[list[Cell]]]:
+    """Title, columns and rows without details, and without a place that all rows share (it goes to the title)."""
+    title, kept = table.title, []
+    for place, column in enumerate(table.columns):
+        values = {row[place] for row in table.rows}
+        if column.alike and len(table.rows) > 1 and len(values) == 1:
+            title += f", {column.title} the {values.pop()}"
+        elif not column.detail:
+            kept.append(place)
+    return title, [table.columns[place] for place in kept], [[row[place] for place in kept] for row in table.rows]
+
+
+def _units(columns: Sequence[Column]) -> tuple[set[str], str]:
+    """Units that the title says, and its words: the commonest, and one other if a single column has it."""
+    counts = Counter(column.unit for column in columns if column.number and column.unit)
+    if not counts:
+        return set(), ""
+    (first, times), *others = counts.most_common()
+    if not others:
+        return {first}, first
+    if times > 1 and len(others) == 1 and others[0][1] == 1:
+        odd = next(column for column in columns if column.number and column.unit == others[0][0])
+        return {first, odd.unit}, f"{first}; {odd.title} in {odd.unit}"
+    return set(), ""
 
 
 def _grid(
-    columns: Sequence[Column], rows: list[list[Cell]], groups: list[str] | None, unit: str, width: int, indent: str
+    columns: Sequence[Column], rows: list[list[Cell]], groups: list[str] | None, said: set[str], width: int, indent: str
 ) -> Iterator[str]:
     texts = _aligned(columns, rows)
-    heads = [_head(column, unit) for column in columns]
+    heads = [_head(column, said) for column in columns]
     widths = _widths(columns, heads, texts, width)
     yield from _line([_fold(head, size) for head, size in zip(heads, widths, strict=True)], columns, widths, indent, True)
     last = None
@@ -94,9 +115,9 @@ def _grid(
         yield from _line([_fold([cell], size) for cell, size in zip(cells, widths, strict=True)], columns, widths, indent)
 
 
-def _head(column: Column, common: str) -> list[str]:
-    own = column.unit if column.number and column.unit and column.unit != common else ""
-    return [column.title, *([own] if own else [])]
+def _head(column: Column, said: set[str]) -> list[str]:
+    """A column's title, and its unit unless the table's title says it."""
+    return [column.title, column.unit] if column.number and column.unit and column.unit not in said else [column.title]
 
 
 def _aligned(columns: Sequence[Column], rows: list[list[Cell]]) -> list[list[str]]:

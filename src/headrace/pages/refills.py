@@ -120,8 +120,8 @@ def splits(answer: RefillAnswer) -> str:
 
 def closed(context: Context, answer: RefillAnswer) -> Table:
     """The refills that exist but can't be used, and why."""
-    titles = ("closed refill", "in", "why it is closed")
-    columns = (*(Column(title) for title in titles), Column("EC", detail=True), Column("source", detail=True))
+    shown = (Column("closed refill"), Column("in", alike=True), Column("why it is closed"))
+    columns = (*shown, Column("EC", detail=True), Column("source", detail=True))
     rows = tuple(
         (
             context.mark(row.label, row.reading == "recalled"),
@@ -147,8 +147,9 @@ def cost(context: Context, answer: RefillAnswer) -> Table:
         Column("CO2 fixed", RATE, number=True),
     )
     rows = tuple(
-        (chain(context, row), row.skeletons_per_turn, row.atp, row.carbon_fixed, _times(row, row.atp), _times(row, row.carbon_fixed))
+        (chain(context, row), row.skeletons_per_turn, *per_turn, *(_times(row, amount) for amount in per_turn))
         for row in answer.refills
+        for per_turn in ((row.atp, row.carbon_fixed),)
         if row.open and max(row.nominal or 0.0, row.most or 0.0) > _IDLE
     )
     return Table("cost", "Cost of the refills", columns, rows, empty="No refill runs.")

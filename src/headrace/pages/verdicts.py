@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
+
 from headrace.pages.context import RATE, Context
 from headrace.pages.numbers import joined, show
-from headrace.values.answers import CeilingAnswer, GroupRow, GrowsAnswer, Ledger, RefillAnswer
+from headrace.values.answers import CeilingAnswer, GroupRow, GrowsAnswer, Ledger, RefillAnswer, RefillRow
 
 
 def refills(context: Context, answer: RefillAnswer) -> str:
@@ -14,12 +16,18 @@ def refills(context: Context, answer: RefillAnswer) -> str:
     book = answer.ledger
     if book is None:
         raise ValueError("a feasible answer has a ledger")
-    by = [row.label for row in answer.refills if row.open and row.nominal is not None and row.nominal > 1e-9]
-    by = by or [group.label for group in answer.groups if group.nominal is not None and group.nominal > 1e-9]
-    drained = f"{_drainers(context)} {show(book.net_drain)} {RATE} of skeletons{_also(book)}"
+    by = _by_size(row for row in answer.refills if row.open) or _by_size(answer.groups)
+    amount = f"{show(book.net_drain)} {RATE} of" if book.net_drain > 1e-9 else "no"
+    drained = f"{_drainers(context)} {amount} skeletons{_also(book)}"
     if book.refilled < 1e-9:
         return f"{drained}; no refill has to run."
     return f"{drained}; {show(book.refilled)} must be put back by {joined(by)}.{_necessary(answer.groups)}{_cover(answer)}"
+
+
+def _by_size(rows: Iterable[RefillRow | GroupRow]) -> list[str]:
+    """Labels of those that run, largest first."""
+    running = [(row.nominal, row.label) for row in rows if row.nominal is not None and row.nominal > 1e-9]
+    return [label for _, label in sorted(running, key=lambda pair: -pair[0])]
 
 
 def _drainers(context: Context) -> str:

@@ -10,6 +10,7 @@ from headrace.values.case import Case
 from headrace.values.facts import Basis, Quantity
 
 STATED = "stated in the scenario"
+ASSUMED = "assumed, since the scenario leaves it out"
 FACT = "fact of the host"
 _READINGS = ("seen", "second-hand", "recalled")
 Row = tuple[Cell, ...]
@@ -25,24 +26,24 @@ def assumptions(context: Context, answer: RefillAnswer) -> Table:
         *_releases(context),
         *_quantities(context),
         *_composition(context),
-        *_routes(context),
         *_rules(context, answer),
     )
     return Table("assumptions", "Assumptions", columns, rows)
 
 
-def _stated(what: str, value: str, unit: str = "") -> Row:
-    return (what, value, unit, STATED, "", "")
+def _stated(what: str, value: str, unit: str = "", assumed: bool = False) -> Row:
+    return (what, value, unit, ASSUMED if assumed else STATED, "", "")
 
 
 def _conditions(context: Context) -> list[Row]:
     case = context.case
     growth = ("growth rate", show(case.growth), "1/h") if case.growth is not None else _biomass_yield(case)
-    rows = [_stated(*growth)]
+    assumed = {finding.about for finding in case.findings if finding.check == "assumed"}
+    rows = [_stated(*growth, assumed="growth" in assumed)]
     for feed in case.feeds:
         value = "left out: the least that serves" if feed.uptake is None else show(feed.uptake)
         rows.append(_stated(f"feed: {context.compound(feed.compound)}", value, "" if feed.uptake is None else RATE))
-    rows.append(_stated("oxygen", case.oxygen))
+    rows.append(_stated("oxygen", case.oxygen, assumed="oxygen" in assumed))
     if case.oxygen_rate is not None:
         rows.append(_stated("oxygen uptake at most", show(case.oxygen_rate), RATE))
     for item in case.supplements:
@@ -73,7 +74,7 @@ def _strain(context: Context) -> list[Row]:
 def _outlets(context: Context) -> list[Row]:
     rows = []
     for demand in context.case.demands:
-        form = f" as {demand.form}" if demand.form else ""
+        form = f" as {context.form(demand)}" if context.form(demand) else ""
         if demand.rate is not None:
             rows.append(_stated(f"outlet: {demand.label}{form}", show(demand.rate), RATE))
         else:
@@ -118,12 +119,6 @@ def _composition(context: Context) -> list[Row]:
     origin = f"borrowed from {borrowed.label}" if borrowed else joined(sorted({part.origin for part in host.composition}))
     value = counted(len(host.composition), "building block")
     return [("biomass composition", value, "mmol/gDW", origin, *_bases(context, [part.basis for part in host.composition]))]
-
-
-def _routes(context: Context) -> list[Row]:
-    slugs = dict.fromkeys(slug for draw in context.result.draws for slug in draw.routes)
-    known = [context.facts.routes[slug] for slug in slugs if slug in context.facts.routes]
-    return [(f"route: {route.label}", "as the host has it", "", "fact", *context.basis(route.basis)) for route in known]
 
 
 def _rules(context: Context, answer: RefillAnswer) -> list[Row]:

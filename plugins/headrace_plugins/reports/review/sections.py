@@ -58,6 +58,7 @@ class Review:
             *drained,
             *refills.blocks(context, self.answer, with_findings=False),
             *self._ceilings(),
+            drains.routes(context),
             *findings(context),
             *asked,
         )
@@ -78,7 +79,8 @@ class Review:
         each += [ledger.rows(context, book)] if book else []
         each += [refills.main(self.answer), refills.groups(context, self.answer), refills.crossings(context, self.answer)]
         each += [self._ceiling_table()] if self.result.related else []
-        return (*each, self._finding_table(), self._source_table())
+        each += [drains.routes(context), self._finding_table(), self._source_table()]
+        return tuple(table for table in each if table.rows)
 
     def _ceiling_table(self) -> Table:
         answers = [ceiling.answer_of(other) for other in self.result.related]

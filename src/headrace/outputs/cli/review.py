@@ -16,6 +16,7 @@ from headrace.outputs.cli import shared
 from headrace.outputs.cli.progress import working
 from headrace.outputs.cli.saving import AgentOption, ResultsOption, SaveOption, StoreOption, keep, wish
 from headrace.outputs.cli.terminal import emit
+from headrace.pages.numbers import counted
 from headrace.values.answers import Document
 
 if TYPE_CHECKING:
@@ -51,8 +52,16 @@ def review(
             bar.step()
     keep([each for result in found for each in (result, *result.related)], wished)
     written = files.write(output, documents(desk, found, scenarios), force)
-    emit("".join(f"{path}\n" for path in written))
+    emit(_said(written, output))
     return max(shared.exit_code(result) for result in found)
+
+
+def _said(written: Sequence[Path], folder: Path) -> str:
+    """The documents by name, and how many tables stand beside them."""
+    tables = [path for path in written if path.suffix == ".csv"]
+    lines = [str(path) for path in written if path not in tables]
+    lines += [f"and {counted(len(tables), 'table')} as CSV in {folder}"] if tables else []
+    return "\n".join(lines) + "\n"
 
 
 def answered(desk: Desk, question: object) -> Result:

@@ -9,7 +9,7 @@ from headrace.names import Entity, Name, NameIndex
 from headrace.values.facts import Facts
 
 KINDS = ("compounds", "reactions", "enzymes", "hosts", "outlets", "routes", "sources")
-PLURALS = (*KINDS, "units", "circumstances", "refills")
+PLURALS = (*KINDS, "families", "units", "circumstances", "refills")
 
 
 def index(facts: Facts) -> NameIndex:

@@ -20,7 +20,8 @@ def page(facts: Facts, plural: str) -> Page:
     """All facts of a kind ("compounds"), one row each."""
     titles, rows = _LISTS[plural]
     table = Table(plural, plural.capitalize(), tuple(Column(title) for title in titles), tuple(rows(facts)), empty="None.")
-    return Page(plural.capitalize(), (), f"{counted(len(table.rows), plural.removesuffix('s'))}.", (table,), table)
+    one = "family" if plural == "families" else plural.removesuffix("s")
+    return Page(plural.capitalize(), (), f"{counted(len(table.rows), one, plural)}.", (table,), table)
 
 
 def sources(facts: Facts) -> Page:
@@ -101,6 +102,11 @@ def _outlets(facts: Facts) -> Rows:
         yield item.slug, item.label, item.family, ", ".join(form.label for form in item.forms)
 
 
+def _families(facts: Facts) -> Rows:
+    for family in sorted({item.family for item in facts.outlets.values()}):
+        yield family, ", ".join(item.label for item in facts.outlets.values() if item.family == family)
+
+
 def _routes(facts: Facts) -> Rows:
     for item in facts.routes.values():
         yield item.slug, item.makes, ", ".join(item.hosts) or "any", len(item.uses), item.basis.reading
@@ -137,6 +143,7 @@ _LISTS: dict[str, tuple[tuple[str, ...], Callable[[Facts], Rows]]] = {
     "enzymes": (("slug", "enzyme", "EC", "cofactors"), _enzymes),
     "hosts": (("slug", "host", "compartments", "reactions", "building blocks"), _hosts),
     "outlets": (("slug", "outlet", "family", "forms"), _outlets),
+    "families": (("family", "outlets"), _families),
     "routes": (("slug", "makes", "hosts", "reactions", "reading"), _routes),
     "sources": (("slug", "citation", "DOI"), _sources),
     "units": (("slug", "unit"), _units),
