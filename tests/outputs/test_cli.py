@@ -44,7 +44,7 @@ class Desk:
     def drains(self, question: object) -> Result:
         return self._give("drains")
 
-    def refills(self, question: object, progress: object = None) -> Result:
+    def refills(self, question: object, progress: object = None, ranges: bool = False) -> Result:
         return self._give("refills")
 
     def ceiling(self, question: object, outlet: str = "") -> Result:
