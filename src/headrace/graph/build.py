@@ -14,6 +14,7 @@ from headrace.errors import FactsError
 from headrace.graph import balance, terms
 from headrace.graph.contents import contents
 from headrace.graph.convert import Entry, Reader
+from headrace.graph.depth import depth
 from headrace.graph.fault import Fault
 from headrace.graph.files import FactFile
 from headrace.graph.hosts import HOST_LOCAL, host
@@ -65,6 +66,7 @@ def collect(graph: Graph, version: str) -> tuple[Facts | None, list[Fault]]:
         kinds=_kinds(reader),
         roles={slug: found for slug, found in roles.items() if found},
         electron_pairs=dict(pair for entry in reader.entries(terms.ROLE_CLASS) for pair in pairs(entry)),
+        **depth(reader),
     )
     return (None if reader.faults else facts), reader.faults
 

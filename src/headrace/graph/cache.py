@@ -26,10 +26,10 @@ STALE = 3600.0  # seconds
 _DIGEST = hashlib.sha256().digest_size
 
 
-def read(folder: Path, version: str) -> Facts | None:
-    """The cached facts of this version, or None when there is no whole and current file."""
+def read(folder: Path, version: str, rules: str = "") -> Facts | None:
+    """The cached facts of this version, or None when there is no whole and current file. rules: digest of the finding rules."""
     try:
-        data = _file(folder, version).read_bytes()
+        data = _file(folder, version + rules).read_bytes()
     except OSError:
         return None
     digest, body = data[:_DIGEST], memoryview(data)[_DIGEST:]
@@ -47,7 +47,7 @@ def read(folder: Path, version: str) -> Facts | None:
     return facts if facts.version == version else None
 
 
-def write(folder: Path, facts: Facts) -> bool:
+def write(folder: Path, facts: Facts, rules: str = "") -> bool:
     """Keep the facts for the next process. False when the folder can't be written: the cache is only a help."""
     body = msgspec.msgpack.encode(facts, enc_hook=codec.encode_hook)
     try:
@@ -56,7 +56,7 @@ def write(folder: Path, facts: Facts) -> bool:
         try:
             with part.open("xb") as stream:
                 stream.write(hashlib.sha256(body).digest() + body)
-            os.replace(part, _file(folder, facts.version))
+            os.replace(part, _file(folder, facts.version + rules))
         except BaseException:
             part.unlink(missing_ok=True)
             raise
@@ -71,7 +71,8 @@ def code_version() -> str:
     """Hash of the code that builds facts: this package, the shape of the values and the solver of contents."""
     here = Path(__file__).resolve().parent
     digest = hashlib.sha256()
-    for path in [*sorted(here.glob("*.py")), here.parent / "values" / "facts.py", here.parent / "solve" / "exact.py"]:
+    values = (here.parent / "values" / f"{name}.py" for name in ("basis", "depth", "facts"))
+    for path in [*sorted(here.glob("*.py")), *values, here.parent / "solve" / "exact.py"]:
         digest.update(path.read_bytes())
     return digest.hexdigest()[:8]
 

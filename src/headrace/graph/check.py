@@ -18,8 +18,10 @@ from headrace.graph.build import collect, complete
 from headrace.graph.exceptions import Exceptions
 from headrace.graph.fault import Fault
 from headrace.graph.files import FactFile, fact_files, normalised, turtle_paths, version
+from headrace.graph.findings import completed
 from headrace.graph.read import Graph, quads
 from headrace.graph.rules import broken_rules, read_rules, store_of
+from headrace.graph.ruletexts import rule_texts
 from headrace.graph.shapes import broken_shapes
 from headrace.graph.slugs import unlike_names
 from headrace.graph.turtle import write
@@ -58,7 +60,7 @@ def check(
     found += broken_rules(read_rules(rules or home / "rules"), store_of(statements), graph)
     found += unlike_names(graph)
     if facts is not None:
-        found += _proven(facts, proofs)
+        found += _proven(completed(facts, rule_texts(homes, extra), files), proofs)
     exceptions = Exceptions.read(homes)
     return sorted(exceptions.apply(found), key=lambda fault: (fault.file, fault.node, fault.rule, fault.message))
 

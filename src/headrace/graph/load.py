@@ -8,6 +8,7 @@ from pathlib import Path
 from headrace import paths
 from headrace.graph import cache as stored
 from headrace.graph.files import fact_files, version
+from headrace.graph.ruletexts import digest, rule_texts
 from headrace.values.facts import Facts
 
 
@@ -17,14 +18,16 @@ def load(folders: Sequence[Path] | None = None, extra: Sequence[tuple[str, Path]
     cache: whether built facts may be read from and kept in `paths.cache_folder()`; the answer is the same.
     Raises FactsError, which names file and node, for the first fault and says how many more there are.
     """
-    files = fact_files([paths.facts_folder()] if folders is None else folders, extra)
-    current = version(files)
+    homes = [paths.facts_folder()] if folders is None else folders
+    files, rules = fact_files(homes, extra), rule_texts(homes, extra)
+    current, ruled = version(files), digest(rules)
     folder = paths.cache_folder() if cache else None
-    if folder is not None and (facts := stored.read(folder, current)) is not None:
+    if folder is not None and (facts := stored.read(folder, current, ruled)) is not None:
         return facts
     from headrace.graph.build import build  # reading Turtle takes libraries that the cached path does without
+    from headrace.graph.findings import completed  # so does running rules
 
-    facts = build(files, current)
+    facts = completed(build(files, current), rules, files)
     if folder is not None:
-        stored.write(folder, facts)
+        stored.write(folder, facts, ruled)
     return facts

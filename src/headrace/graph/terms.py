@@ -110,6 +110,12 @@ EXCEPTION = HR + "Exception"
 QUANTITY = QUDT + "Quantity"
 DOCUMENT = BIBO + "Document"
 CONCEPT = SKOS + "Concept"
+KINETIC_CONSTANT = HR + "KineticConstant"
+FORMATION_ENERGY = HR + "FormationEnergy"
+CONCENTRATION = HR + "Concentration"
+EFFECT = HR + "Effect"
+VITAMIN = HR + "Vitamin"
+SUPPLY = HR + "Supply"
 
 # Properties of compounds and reactions
 FORMULA = HR + "formula"
@@ -179,6 +185,16 @@ FRACTION = HR + "fraction"
 DISPLAY = HR + "display"
 UCUM = QUDT + "ucumCode"
 
+# Properties of kinetic constants, energies, effects and vitamins
+HYDROGENS = HR + "hydrogens"
+PH = HR + "ph"
+IONIC_STRENGTH = HR + "ionicStrength"
+EFFECTOR = HR + "effector"
+SENSE = HR + "sense"
+GIVES = HR + "gives"
+HAS_VITAMIN = HR + "vitamin"
+SUPPLIED = HR + "supplied"
+
 # Properties of outlets and routes
 FAMILY = HR + "family"
 DRAWS = HR + "draws"
@@ -225,3 +241,5 @@ SIDES = ("outer", "inner")
 OXYGEN_STATES = ("present", "absent")
 LEVELS = ("on", "basal")
 CONVENTIONS = ("motive-balanced", "inside-balanced")
+SENSES = ("activator", "inhibitor")
+VITAMIN_SUPPLIES = ("made-inside", "from-the-medium")

@@ -10,21 +10,9 @@ from fractions import Fraction
 
 from msgspec import Struct
 
-
-class Source(Struct, frozen=True):
-    """Where a fact comes from. `text` is the citation as shown; `doi` is without a resolver's address."""
-
-    slug: str
-    text: str
-    doi: str = ""
-
-
-class Basis(Struct, frozen=True):
-    """How far a fact can be trusted. reading: seen | second-hand | recalled; sources: slugs of `Source`."""
-
-    reading: str
-    sources: tuple[str, ...] = ()
-    note: str = ""
+from headrace.values.basis import Basis as Basis
+from headrace.values.basis import Source as Source
+from headrace.values.depth import Concentration, Constant, Effect, FormationEnergy, RuleRow, Vitamin
 
 
 class Compound(Struct, frozen=True):
@@ -265,6 +253,7 @@ class Facts(Struct, frozen=True):
     inorganic-carbon, water, proton, motive-proton, ammonium; for route vectors also mineral, peroxide, one-carbon,
     one-carbon-carrier, adenylate, acyl-carrier, by-product. electron_pairs: reduced carrier -> oxidised carrier.
     kinds: the label of each kind of quantity. implied: circumstance -> enzyme whose removal brings it about.
+    rule_rows: what the finding rules say of these facts (derived); a case is held against their triggers.
     """
 
     version: str
@@ -282,3 +271,9 @@ class Facts(Struct, frozen=True):
     contents: dict[str, Fraction] = {}
     roles: dict[str, tuple[str, ...]] = {}
     electron_pairs: dict[str, str] = {}
+    kinetics: tuple[Constant, ...] = ()
+    formation: tuple[FormationEnergy, ...] = ()
+    concentrations: tuple[Concentration, ...] = ()
+    effects: tuple[Effect, ...] = ()
+    vitamins: tuple[Vitamin, ...] = ()
+    rule_rows: tuple[RuleRow, ...] = ()
