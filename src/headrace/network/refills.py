@@ -89,7 +89,8 @@ def closed_refills(net: Network) -> tuple[Refill, ...]:
     absent = {a.reaction: a.reason for a in net.host.absences}
     cytosol = next(c.slug for c in net.host.compartments if c.role == "cytosol")
     for slug, reaction in sorted(facts.reactions.items()):
-        if slug not in have and slug not in routes and not reaction.transport and turnover(facts, slug) > 1e-9:
+        new = any(t.count > 0 and facts.compounds[t.compound].anchor for t in reaction.terms)
+        if new and not reaction.lumped and slug not in have and slug not in routes and not reaction.transport and turnover(facts, slug) > 1e-9:
             reason = absent.get(slug, "the host's facts do not list it")
             found.append(Refill(slug, slug, 1, cytosol, turnover(facts, slug), inorganic_fixed(facts, slug, 1), None,
                                 "absent", f"absent: {reason}"))

@@ -60,9 +60,12 @@ def shortage(net: Network) -> tuple[tuple[Shortage, ...], list[tuple[str, float]
     extra = [({p: 1.0}, 0.0, INFINITY) for p in tops] + [({p: -1.0}, 0.0, INFINITY) for p in spare]
     session = Session(programme(net, extra=extra))
     cost, start = np.zeros(session.columns), session.columns - len(extra)
+    served = _served(net)
     for i, p in enumerate(tops):
-        compound = facts.compounds[net.pools[p][0]]
+        name, place = net.pools[p]
+        compound = facts.compounds[name]
         root = 1.0 if compound.anchor or compound.precursor else 3.0  # name the pool at the root, not what hangs on it
+        root *= 1.0 - 0.01 * served.get(name, 0) + (0.0 if place == cytosol_of(net.host) else 0.05)
         cost[start + i] = root * (1.0 + compound.formula.get("C", 0))
     for i, p in enumerate(spare):
         cost[start + len(tops) + i] = 1.0 + facts.compounds[net.pools[p][0]].formula.get("C", 0)
@@ -74,6 +77,16 @@ def shortage(net: Network) -> tuple[tuple[Shortage, ...], list[tuple[str, float]
     left = [(facts.compounds[net.pools[p][0]].label, float(x[len(tops) + i])) for i, p in enumerate(spare)
             if x[len(tops) + i] > 1e-7]
     return tuple(sorted(short, key=lambda s: -s.missing)), left
+
+
+def _served(net: Network) -> dict[str, int]:
+    """How many closed refills would make each anchor: of equal pools the one that they serve is named."""
+    count: dict[str, int] = {}
+    for refill in closed_refills(net):
+        for term in net.facts.reactions[refill.reaction].terms:
+            if term.count * refill.sign > 0 and net.facts.compounds[term.compound].anchor:
+                count[term.compound] = count.get(term.compound, 0) + 1
+    return count
 
 
 def _name(net: Network, pool: int) -> str:

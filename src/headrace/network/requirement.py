@@ -5,6 +5,7 @@ Requirement = forward rate of a refill, mmol/gDW/h, at the aim (nominal) and ove
 
 from __future__ import annotations
 
+import dataclasses
 from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence
 
@@ -12,7 +13,7 @@ import numpy as np
 from msgspec.structs import replace
 
 from headrace.network import aim, repair
-from headrace.network.build import Network, programme
+from headrace.network.build import Bound, Network, programme
 from headrace.network.closure import closure, crossings, drawn, free_crossings
 from headrace.network.refills import (
     Refill,
@@ -35,7 +36,7 @@ from headrace.values.answers import (
     RefillAnswer,
     RefillRow,
 )
-from headrace.values.facts import Facts
+from headrace.values.facts import Facts, Quantity
 
 
 def drain_rows(facts: Facts, draws: Sequence[Draw], scalars: Mapping[str, float]) -> tuple[DrainRow, ...]:
@@ -59,12 +60,16 @@ def drain_rows(facts: Facts, draws: Sequence[Draw], scalars: Mapping[str, float]
 
 def require(net: Network, draws: Sequence[Draw] = ()) -> RefillAnswer:
     """Answer one case: ledger, requirements, closed refills; or the shortage and repairs when it can't be met."""
-    solved = aim.solve(net)
+    shared = _with_shares(net)
+    solved = aim.solve(shared)
+    if not isinstance(solved, aim.Aimed):
+        shared = net
+        solved = aim.solve(net)
     if not isinstance(solved, aim.Aimed):
         return _infeasible(net, draws)
     rates = {j: solved.rate(j) for j in range(len(net.columns))}
     opened = open_refills(net)
-    groups = _groups(net, solved, opened)
+    groups = _groups(net, solved, opened, shared is not net)
     rows = [_row(net, solved, r, groups) for r in opened] + [_closed(net, r) for r in closed_refills(net)]
     law = _by_group(ledger(net, rates, solved.scalars, draws), rows, [g for g, _ in groups.values()])
     inside = crossings(net, solved.x) + free_crossings(net, solved.x, solved.scalars)
@@ -98,7 +103,9 @@ def _by_group(law: Ledger, rows: Sequence[RefillRow], groups: Sequence[GroupRow]
 
 def rate_ranges(net: Network) -> tuple[RateRow, ...]:
     """The net rate of every row at the aim with its least and most over the optima (within the case's slack)."""
-    solved = aim.solve(net)
+    solved = aim.solve(_with_shares(net))
+    if not isinstance(solved, aim.Aimed):
+        solved = aim.solve(net)
     if not isinstance(solved, aim.Aimed):
         return ()
     found = []
@@ -152,7 +159,27 @@ def _removals(net: Network, solved: aim.Aimed) -> tuple[RateRow, ...]:
     return tuple(RateRow(r.what, r.skeletons) for r in found.rows if r.kind == "removed")
 
 
-def _groups(net: Network, solved: aim.Aimed, opened: Iterable[Refill]) -> dict[str, tuple[GroupRow, list[Refill]]]:
+def _stated_shares(net: Network, rows: Sequence[str]) -> dict[str, Quantity]:
+    """Sourced shares of a group's rows in its requirement, where at most one row is left over (it takes the rest)."""
+    stated = {q.about: q for q in net.host.quantities if q.kind == "split-share" and q.about in rows}
+    return stated if len(rows) > 1 and len(rows) - len(stated) <= 1 else {}
+
+
+def _with_shares(net: Network) -> Network:
+    """The network with each sourced split as a bound: (1 - share) v_row - share * (the group's other rows) = 0."""
+    members: dict[str, list[Refill]] = defaultdict(list)
+    for refill in open_refills(net):
+        members[refill.group].append(refill)
+    bounds = []
+    for refills in members.values():
+        for row, quantity in _stated_shares(net, sorted({r.row for r in refills})).items():
+            share = float(quantity.value)
+            weights = {r.column: 1.0 - share if r.row == row else -share for r in refills if r.column is not None}
+            bounds.append(Bound(f"measured share of {row}", weights, {}, 0.0, 0.0))
+    return dataclasses.replace(net, bounds=(*net.bounds, *bounds)) if bounds else net
+
+
+def _groups(net: Network, solved: aim.Aimed, opened: Iterable[Refill], shares_hold: bool) -> dict[str, tuple[GroupRow, list[Refill]]]:
     members: dict[str, list[Refill]] = defaultdict(list)
     for refill in opened:
         members[refill.group].append(refill)
@@ -164,7 +191,7 @@ def _groups(net: Network, solved: aim.Aimed, opened: Iterable[Refill]) -> dict[s
         capacity = _capacity(net, [r.row for r in refills])
         found[name] = (GroupRow(
             name, _group_label(net, refills), tuple(sorted(r.slug for r in refills)), max(low, 0.0), nominal, high,
-            capacity, _cover(capacity, nominal), aim.necessary(net, columns), _split(net, refills)[0]), refills)
+            capacity, _cover(capacity, nominal), aim.necessary(net, columns), _split(net, refills, shares_hold)[0]), refills)
     return found
 
 
@@ -188,16 +215,15 @@ def _capacity(net: Network, rows: Sequence[str]) -> float | None:
     return total if used == set(rows) else None
 
 
-def _split(net: Network, refills: Sequence[Refill]) -> tuple[str, dict[str, float]]:
+def _split(net: Network, refills: Sequence[Refill], shares_hold: bool) -> tuple[str, dict[str, float]]:
     """Why and how a group's requirement is shared: (reason, share per refill slug); no shares = open."""
     rows = sorted({r.row for r in refills})
     if len(refills) == 1:
         return "only member", {refills[0].slug: 1.0}
-    stated = {q.about: q for q in net.host.quantities if q.kind == "split-share" and q.about in rows}
-    rest = [r for r in rows if r not in stated]
-    if stated and len(rest) <= 1 and len(rows) == len(refills):
+    stated = _stated_shares(net, rows)
+    if stated and shares_hold and len(rows) == len(refills):
         shares = {row: float(q.value) for row, q in stated.items()}
-        shares |= {row: 1.0 - sum(shares.values()) for row in rest}
+        shares |= {row: 1.0 - sum(shares.values()) for row in rows if row not in stated}
         source = next(iter(stated.values()))
         texts = [net.facts.sources[s].text for s in source.basis.sources if s in net.facts.sources]
         return f"measured share: {'; '.join(texts) or 'no source'}", {r.slug: shares[r.row] for r in refills}
@@ -205,6 +231,8 @@ def _split(net: Network, refills: Sequence[Refill]) -> tuple[str, dict[str, floa
     known = [c for c in capacity.values() if c is not None]
     if len(known) == len(refills) and sum(known) > 0:
         return "in proportion to capacity", {k: (c or 0.0) / sum(known) for k, c in capacity.items()}
+    if stated:
+        return "open: the measured share can't hold in this case", {}
     return "open: no fact or capacity says how these share", {}
 
 
@@ -212,7 +240,7 @@ def _row(net: Network, solved: aim.Aimed, refill: Refill, groups: Mapping[str, t
     assert refill.column is not None
     group, members = groups[refill.group]
     low, high = solved.range({refill.column: 1.0})
-    reason, shares = _split(net, members)
+    reason, shares = group.split, _split(net, members, group.split.startswith("measured"))[1]
     nominal = shares[refill.slug] * (group.nominal or 0.0) if shares else (0.0 if high < 1e-9 else None)
     if nominal is None and abs(high - low) < 1e-6 * max(1.0, high):
         nominal, reason = (low + high) / 2, "fixed by the balance"
