@@ -82,9 +82,9 @@ def shortage(net: Network) -> tuple[tuple[Shortage, ...], list[tuple[str, float]
 def _served(net: Network) -> dict[str, int]:
     """How many closed refills would make each anchor: of equal pools the one that they serve is named."""
     count: dict[str, int] = {}
-    for refill in closed_refills(net):
-        for term in net.facts.reactions[refill.reaction].terms:
-            if term.count * refill.sign > 0 and net.facts.compounds[term.compound].anchor:
+    for reaction, sign in {(r.reaction, r.sign) for r in closed_refills(net) if r.kind != "direction"}:
+        for term in net.facts.reactions[reaction].terms:
+            if term.count * sign > 0 and net.facts.compounds[term.compound].anchor:
                 count[term.compound] = count.get(term.compound, 0) + 1
     return count
 
