@@ -8,69 +8,22 @@ scalar k ("growth", "maintenance", "outlet.0") draws from the pools, r_k its rat
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass, field
+from fractions import Fraction
 
 import numpy as np
 
 from headrace.errors import FactsError
+from headrace.network.model import Bound, Column, Exact, ExactBound, Network, Pool
 from headrace.solve.linear import INFINITY, Floats, Programme
 from headrace.values.case import Case
 from headrace.values.facts import Basis, Facts, Host, HostReaction
 
-Pool = tuple[str, str]
+__all__ = ["Bound", "Column", "Network", "Pool", "build", "cytosol_of", "exactly", "medium_of", "place_of", "programme",
+           "terms_of"]
 
-
-@dataclass(frozen=True)
-class Column:
-    """kind: row | enter | leave. name: row slug or compound slug. sign: +1 as written, -1 backward (rows)."""
-
-    kind: str
-    name: str
-    sign: int = 1
-
-
-@dataclass(frozen=True)
-class Bound:
-    """lower <= sum coefficients[column] v + sum scalars[k] r_k <= upper, with a label for messages."""
-
-    label: str
-    coefficients: dict[int, float]
-    scalars: dict[str, float]
-    lower: float
-    upper: float
-
-
-@dataclass(frozen=True)
-class Network:
-    """One case's pools, columns and demands. entries: per column {pool number: coefficient}."""
-
-    facts: Facts
-    host: Host
-    case: Case
-    pools: tuple[Pool, ...]
-    columns: tuple[Column, ...]
-    entries: tuple[dict[int, float], ...]
-    upper: Floats
-    lower: Floats
-    free: frozenset[int]
-    demands: dict[str, dict[int, float]]
-    bounds: tuple[Bound, ...]
-    rates: dict[str, float]
-    coupled: tuple[str, ...]
-    index: dict[Pool, int] = field(default_factory=dict)
-
-    def columns_of(self, rows: Iterable[str]) -> list[int]:
-        """The columns that any of these rows runs in."""
-        wanted = set(rows)
-        return [j for j, c in enumerate(self.columns) if c.kind == "row" and c.name in wanted]
-
-    def vector(self, values: Mapping[int, float]) -> Floats:
-        """A dense vector over the columns."""
-        dense = np.zeros(len(self.columns))
-        for j, value in values.items():
-            dense[j] = value
-        return dense
+ZERO, ONE = Fraction(0), Fraction(1)
 
 
 def place_of(facts: Facts, host: Host, row: HostReaction, compound: str, side: str) -> str:
@@ -82,10 +35,15 @@ def place_of(facts: Facts, host: Host, row: HostReaction, compound: str, side: s
     return row.inner if side == "inner" or not row.place else row.place
 
 
-def terms_of(facts: Facts, host: Host, row: HostReaction) -> list[tuple[Pool, float]]:
+def terms_of(facts: Facts, host: Host, row: HostReaction) -> list[tuple[Pool, Fraction]]:
     """(pool, count) of a row as written; count < 0 is taken."""
     reaction = facts.reactions[row.reaction]
-    return [((t.compound, place_of(facts, host, row, t.compound, t.side)), float(t.count)) for t in reaction.terms]
+    return [((t.compound, place_of(facts, host, row, t.compound, t.side)), t.count) for t in reaction.terms]
+
+
+def exactly(value: float) -> Fraction:
+    """A number of the case as the decimal that it prints as (0.15 = 3/20). Raises ValueError for infinity."""
+    return Fraction(repr(float(value)))
 
 
 def medium_of(host: Host) -> str:
@@ -116,24 +74,26 @@ class _Maker:
         self.medium, self.cytosol = medium_of(self.host), cytosol_of(self.host)
         self.index: dict[Pool, int] = {}
         self.columns: list[Column] = []
-        self.entries: list[dict[int, float]] = []
-        self.lower: list[float] = []
-        self.upper: list[float] = []
-        self.demands: dict[str, dict[int, float]] = {}
-        self.bounds: list[Bound] = []
+        self.entries: list[dict[int, Fraction]] = []
+        self.lower: list[Fraction | None] = []
+        self.upper: list[Fraction | None] = []
+        self.demands: dict[str, dict[int, Fraction]] = {}
+        self.labels: list[str] = []
+        self.bounds: list[ExactBound] = []
 
     def pool(self, pool: Pool) -> int:
         return self.index.setdefault(pool, len(self.index))
 
-    def column(self, column: Column, terms: Iterable[tuple[Pool, float]], lower: float, upper: float) -> None:
-        entry: dict[int, float] = {}
+    def column(self, column: Column, terms: Iterable[tuple[Pool, Fraction]], lower: float = 0.0, upper: float = INFINITY) -> None:
+        entry: dict[int, Fraction] = {}
         for pool, count in terms:
             number = self.pool(pool)
-            entry[number] = entry.get(number, 0.0) + count * column.sign
+            signed = count if column.sign > 0 else -count
+            entry[number] = entry[number] + signed if number in entry else signed
         self.columns.append(column)
         self.entries.append({k: v for k, v in entry.items() if v})
-        self.lower.append(lower)
-        self.upper.append(upper)
+        self.lower.append(_limit(lower))
+        self.upper.append(_limit(upper))
 
     def add_rows(self) -> None:
         for slug, row in sorted(self.case.rows.items()):
@@ -141,16 +101,15 @@ class _Maker:
                 continue
             terms = self._stated_coupling(row, terms_of(self.facts, self.host, row))
             if row.direction in ("forward", "both"):
-                self.column(Column("row", slug), terms, 0.0, INFINITY)
+                self.column(Column("row", slug), terms)
             if row.direction in ("reverse", "both"):
-                self.column(Column("row", slug, -1), terms, 0.0, INFINITY)
+                self.column(Column("row", slug, -1), terms)
         release = self.facts.reactions[self.facts.roles["energy-release"][0]]
         place = {t.compound: (t.compound, self.cytosol) for t in release.terms}
         if not any(r.reaction == release.slug and self.case.levels[s].level != "off" for s, r in self.case.rows.items()):
-            self.column(Column("spill", release.slug), [(place[t.compound], float(t.count)) for t in release.terms],
-                        0.0, INFINITY)
+            self.column(Column("spill", release.slug), [(place[t.compound], t.count) for t in release.terms])
 
-    def _stated_coupling(self, row: HostReaction, terms: list[tuple[Pool, float]]) -> list[tuple[Pool, float]]:
+    def _stated_coupling(self, row: HostReaction, terms: list[tuple[Pool, Fraction]]) -> list[tuple[Pool, Fraction]]:
         """The row's terms, with another number of motive protons per ATP where the case states one.
 
         What is taken more from the membrane comes out as plain protons where the row works, so atoms and charge stay.
@@ -163,7 +122,7 @@ class _Maker:
         taken = -sum(count for (name, _), count in terms if name in motive)
         if stated is None or made <= 0 or taken <= 0:
             return terms
-        more = stated * made - taken
+        more = exactly(stated) * made - taken
         here = next((pool for pool, _ in terms if pool[0] in protons), (protons[0], row.place or row.inner))
         membrane = next(pool for pool, _ in terms if pool[0] in motive)
         return [*terms, (membrane, -more), (here, more)]
@@ -185,15 +144,15 @@ class _Maker:
         fixed = {f.compound for f in case.feeds}
         for name, (low, high) in sorted(enter.items()):
             if name in fixed or (name, medium) in self.index:
-                self.column(Column("enter", name), [((name, medium), 1.0)], low, high)
+                self.column(Column("enter", name), [((name, medium), ONE)], low, high)
         for name in sorted(leave):
             if (name, medium) in self.index:
-                self.column(Column("leave", name), [((name, medium), -1.0)], 0.0, INFINITY)
+                self.column(Column("leave", name), [((name, medium), -ONE)])
 
-    def draw(self, scalar: str, pool: Pool, amount: float) -> None:
+    def draw(self, scalar: str, pool: Pool, amount: Fraction) -> None:
         entry = self.demands.setdefault(scalar, {})
         number = self.pool(pool)
-        entry[number] = entry.get(number, 0.0) + amount
+        entry[number] = entry.get(number, ZERO) + amount
 
     def add_demands(self) -> None:
         case, facts = self.case, self.facts
@@ -201,47 +160,54 @@ class _Maker:
         for part in self.host.composition:
             if part.oxygen in ("", present):
                 place = place_of(facts, self.host, _anywhere(part.place), part.compound, "")
-                self.draw("growth", (part.compound, place), float(part.amount))
-        self._energy("growth", case.energy.get("growth-associated-atp", 0.0))
-        self._energy("maintenance", 1.0)
+                self.draw("growth", (part.compound, place), part.amount)
+        self._energy("growth", exactly(case.energy.get("growth-associated-atp", 0.0)))
+        self._energy("maintenance", ONE)
         for number, demand in enumerate(case.demands):
             for compound, count in demand.draws.items():
                 place = place_of(facts, self.host, _anywhere(demand.place), compound, "")
-                self.draw(f"outlet.{number}", (compound, place), float(count))
+                self.draw(f"outlet.{number}", (compound, place), count)
                 if self.host.proton_convention == "inside-balanced":  # it leaves the cell without charge
-                    acid = float(count) * -facts.compounds[compound].charge
+                    acid = count * -facts.compounds[compound].charge
                     self.draw(f"outlet.{number}", (facts.roles["proton"][0], place), acid)
 
-    def _energy(self, scalar: str, amount: float) -> None:
+    def _energy(self, scalar: str, amount: Fraction) -> None:
         for term in self.facts.reactions[self.facts.roles["energy-release"][0]].terms:
-            self.draw(scalar, (term.compound, self.cytosol), -float(term.count) * amount)
+            self.draw(scalar, (term.compound, self.cytosol), -term.count * amount)
+
+    def bound(self, label: str, coefficients: dict[int, Fraction], scalars: dict[str, Fraction],
+              lower: Fraction | None, upper: Fraction | None) -> None:
+        self.labels.append(label)
+        self.bounds.append(ExactBound(coefficients, scalars, lower, upper))
 
     def add_bounds(self) -> None:
         case = self.case
         basal = case.energy.get("basal-level")
-        feeds = {j: 1.0 for j, c in enumerate(self.columns) if c.kind == "enter" and c.name in {f.compound for f in case.feeds}}
+        fed = {f.compound for f in case.feeds}
+        feeds = [j for j, c in enumerate(self.columns) if c.kind == "enter" and c.name in fed]
+        runs: dict[str, list[int]] = {}
         for j, column in enumerate(self.columns):
-            if column.kind == "row" and case.levels[column.name].level == "basal":
-                if basal is None:
-                    raise FactsError(f"row {column.name} is at basal level but host {case.host} states no basal-level")
-                self.bounds.append(Bound(f"basal level of {column.name}", {j: 1.0}, {"growth": -basal}, -INFINITY, 0.0))
+            if column.kind == "row":
+                runs.setdefault(column.name, []).append(j)
+                if case.levels[column.name].level == "basal":
+                    if basal is None:
+                        raise FactsError(f"row {column.name} is at basal level but host {case.host} states no basal-level")
+                    self.bound(f"basal level of {column.name}", {j: ONE}, {"growth": -exactly(basal)}, None, ZERO)
         for limit in case.limits:
-            used = {j: 1.0 for j, c in enumerate(self.columns) if c.kind == "row" and c.name in limit.rows}
+            used = dict.fromkeys((j for row in dict.fromkeys(limit.rows) for j in runs.get(row, ())), ONE)
             if used:
-                self.bounds.append(Bound(f"limit of {limit.label}", used, {}, -INFINITY, limit.rate))
+                self.bound(f"limit of {limit.label}", used, {}, None, exactly(limit.rate))
         for quantity in self.host.quantities:
-            if quantity.kind == "share-of-feed":
-                rows = {j: 1.0 for j, c in enumerate(self.columns) if c.kind == "row" and c.name == quantity.about}
-                if rows:
-                    share = {j: -float(quantity.value) for j in feeds}
-                    self.bounds.append(Bound(f"share of the feed for {quantity.about}", rows | share, {}, -INFINITY, 0.0))
+            if quantity.kind == "share-of-feed" and quantity.about in runs:
+                share = dict.fromkeys(runs[quantity.about], ONE) | dict.fromkeys(feeds, -quantity.value)
+                self.bound(f"share of the feed for {quantity.about}", share, {}, None, ZERO)
         for number, demand in enumerate(case.demands):
             if demand.rate is None:
-                share = {j: -float(demand.yield_per_feed or 0.0) for j in feeds}
-                self.bounds.append(Bound(f"yield of {demand.label}", share, {f"outlet.{number}": 1.0}, 0.0, 0.0))
+                share = dict.fromkeys(feeds, -exactly(demand.yield_per_feed or 0.0))
+                self.bound(f"yield of {demand.label}", share, {f"outlet.{number}": ONE}, ZERO, ZERO)
         if case.growth is None:
-            share = {j: -float(case.growth_yield or 0.0) for j in feeds}
-            self.bounds.append(Bound("biomass yield", share, {"growth": 1.0}, 0.0, 0.0))
+            share = dict.fromkeys(feeds, -exactly(case.growth_yield or 0.0))
+            self.bound("biomass yield", share, {"growth": ONE}, ZERO, ZERO)
 
     def finish(self) -> Network:
         role, host = self.facts.roles, self.host
@@ -254,20 +220,36 @@ class _Maker:
                 free.add(number)
             elif compound in protons and (not inside or kinds[place] == "medium"):
                 free.add(number)
-        rates = {"maintenance": self.case.energy.get("maintenance", 0.0)}
+        rates = {"maintenance": exactly(self.case.energy.get("maintenance", 0.0))}
         coupled = []
         for number, demand in enumerate(self.case.demands):
             if demand.rate is None:
                 coupled.append(f"outlet.{number}")
             else:
-                rates[f"outlet.{number}"] = demand.rate
+                rates[f"outlet.{number}"] = exactly(demand.rate)
         if self.case.growth is None:
             coupled.append("growth")
         else:
-            rates["growth"] = self.case.growth
-        return Network(self.facts, host, self.case, tuple(self.index), tuple(self.columns), tuple(self.entries),
-                       np.array(self.upper), np.array(self.lower), frozenset(free), self.demands, tuple(self.bounds),
-                       rates, tuple(coupled), dict(self.index))
+            rates["growth"] = exactly(self.case.growth)
+        exact = Exact(tuple(self.entries), tuple(self.lower), tuple(self.upper), self.demands, tuple(self.bounds), rates)
+        return Network(self.facts, host, self.case, tuple(self.index), tuple(self.columns), tuple(map(_rounded, self.entries)),
+                       np.array([INFINITY if v is None else float(v) for v in self.upper]),
+                       np.array([-INFINITY if v is None else float(v) for v in self.lower]), frozenset(free),
+                       {scalar: _rounded(draws) for scalar, draws in self.demands.items()}, self._rounded_bounds(),
+                       {scalar: float(rate) for scalar, rate in rates.items()}, tuple(coupled), exact, dict(self.index))
+
+    def _rounded_bounds(self) -> tuple[Bound, ...]:
+        return tuple(Bound(label, _rounded(b.coefficients), {k: float(v) for k, v in b.scalars.items()},
+                           -INFINITY if b.lower is None else float(b.lower), INFINITY if b.upper is None else float(b.upper))
+                     for label, b in zip(self.labels, self.bounds, strict=True))
+
+
+def _rounded(entry: Mapping[int, Fraction]) -> dict[int, float]:
+    return {number: value.numerator / value.denominator for number, value in entry.items()}
+
+
+def _limit(value: float) -> Fraction | None:
+    return None if math.isinf(value) else exactly(value)
 
 
 def _anywhere(place: str) -> HostReaction:
