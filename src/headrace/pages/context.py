@@ -88,7 +88,8 @@ class Context(Citations):
     def form(self, demand: Demand) -> str:
         """The form in which an outlet is weighed, where it has more than one."""
         known = self.facts.outlets.get(demand.outlet)
-        return "" if known is not None and len(known.forms) < 2 else demand.form
+        only = known is not None and len(known.forms) < 2
+        return "" if only or demand.form == demand.label else demand.form
 
 
 def versions(result: Result, headrace: str) -> str:

@@ -6,6 +6,7 @@ below one another.
 
 from __future__ import annotations
 
+import re
 from collections import Counter
 from collections.abc import Iterator, Sequence
 from textwrap import wrap
@@ -16,6 +17,7 @@ from headrace.pages.numbers import UNKNOWN, counted, show
 _INDENT = "  "
 _GAP = "  "
 _NARROWEST = 9
+_PIECE = re.compile(r"[^\s-]+-?|-")  # what a line break can't part: words, and the parts of words with hyphens
 
 
 def page(page: Page, width: int = 100) -> str:
@@ -143,7 +145,7 @@ def _widths(columns: Sequence[Column], heads: list[list[str]], texts: list[list[
         words = max(len(word) for line in heads[place] for word in line.split())
         lines = words if column.number else max(len(line) for line in heads[place])
         widths.append(max(lines, *(len(row[place]) for row in texts)))
-        floors.append(max(words, *(len(word) for row in texts for word in row[place].split()), _NARROWEST))
+        floors.append(max(words, *(len(piece) for row in texts for piece in _PIECE.findall(row[place])), _NARROWEST))
     spare = width - len(_GAP) * (len(widths) - 1)
     text = [place for place, column in enumerate(columns) if not column.number]
     for floor in (lambda place: floors[place], lambda place: _NARROWEST):

@@ -6,6 +6,7 @@ from headrace.pages import ledger
 from headrace.pages.context import CARBON, RATE, Context, versions
 from headrace.pages.infeasible import repairs, shortage
 from headrace.pages.model import Block, Cell, Column, Notes, Page, Table
+from headrace.pages.added import added
 from headrace.pages.notes import findings
 from headrace.pages.numbers import joined, show
 from headrace.pages.verdicts import refills as verdict
@@ -52,6 +53,7 @@ def blocks(context: Context, answer: RefillAnswer, with_findings: bool = True) -
         *((groups(context, answer), requirement(context, answer)) if solved else ()),
         closed(context, answer),
         *(flows if solved else ()),
+        *added(context),
         *(findings(context) if with_findings else ()),
     )
 

@@ -19,7 +19,8 @@ Rows = Iterator[Row]
 def page(facts: Facts, plural: str) -> Page:
     """All facts of a kind ("compounds"), one row each."""
     titles, rows = _LISTS[plural]
-    table = Table(plural, plural.capitalize(), tuple(Column(title) for title in titles), tuple(rows(facts)), empty="None.")
+    columns = tuple(Column(title, detail=plural == "refills" and title == "slug") for title in titles)
+    table = Table(plural, plural.capitalize(), columns, tuple(rows(facts)), empty="None.")
     one = "family" if plural == "families" else plural.removesuffix("s")
     return Page(plural.capitalize(), (), f"{counted(len(table.rows), one, plural)}.", (table,), table)
 
