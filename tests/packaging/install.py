@@ -11,7 +11,7 @@ from pathlib import Path
 from typing import Any, NamedTuple
 
 ROOT = Path(__file__).resolve().parents[2]
-SCENARIOS = sorted(path.relative_to(ROOT).as_posix() for path in (ROOT / "examples").glob("*.toml"))
+SCENARIOS = sorted(path.relative_to(ROOT).as_posix() for path in (ROOT / "examples" / "scenarios").glob("*.toml"))
 
 
 class Done(NamedTuple):

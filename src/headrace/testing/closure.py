@@ -23,10 +23,17 @@ from headrace.values.facts import Facts
 Amounts = dict[str, Fraction]
 
 
-def asked(facts: Facts, case: Case, outlet: Demand) -> Amounts:
-    """What one mole of the outlet draws; for growth, what one gram of cells draws by the host's composition."""
+def asked(facts: Facts, case: Case, outlet: Demand, draws: Sequence[Draw]) -> Amounts:
+    """What one mole of the outlet draws: as the draws say, where options decide it, else as the facts say.
+
+    For growth it is what one gram of cells draws by the host's composition, whatever the draws say.
+    """
     if outlet.draws:
-        return dict(outlet.draws)
+        said: Amounts = defaultdict(Fraction)
+        for draw in draws:
+            for compound, count in draw.draws.items():
+                said[compound] += count
+        return said or dict(outlet.draws)
     state = "absent" if case.oxygen == "anaerobic" else "present"
     amounts: Amounts = defaultdict(Fraction)
     for part in facts.hosts[case.host].composition:
@@ -43,7 +50,7 @@ def faults(facts: Facts, draws: Sequence[Draw], drawn: Mapping[str, Fraction]) -
         for term in draw.pools:
             pools[term.compound] += term.taken - term.returned
     yield from _elements(facts, net)
-    free = freely_given(facts) - {name for name in pools if facts.compounds[name].anchor or facts.compounds[name].precursor}
+    free = freely_given(facts)
     for name in sorted({*net, *drawn, *pools}):
         rest = net.get(name, Fraction(0)) - drawn.get(name, Fraction(0)) + pools.get(name, Fraction(0))
         if rest and name not in free:
@@ -68,10 +75,11 @@ def steps_net(facts: Facts, draws: Sequence[Draw]) -> Amounts:
 
 
 def freely_given(facts: Facts) -> set[str]:
-    """Compounds that a route may take and give without saying so among its pools."""
+    """Compounds that a route may take and give without saying so among its pools: all but anchors and precursors."""
     boundary = Boundary(facts)
     carriers = {compound.slug for compound in facts.compounds.values() if compound.carrier}
-    return set(boundary.free) | set(boundary.form) | carriers
+    pools = {compound.slug for compound in facts.compounds.values() if compound.anchor or compound.precursor}
+    return (set(boundary.free) | set(boundary.form) | carriers) - pools
 
 
 def _elements(facts: Facts, net: Amounts) -> Iterator[str]:

@@ -15,6 +15,8 @@ from headrace.errors import HeadraceError
 from headrace.graph.build import build as build_facts
 from headrace.graph.check import check
 from headrace.graph.files import fact_files, version
+from headrace.graph.findings import completed
+from headrace.graph.ruletexts import rule_texts
 from headrace.hooks import merge
 from headrace.hooks.bench import Bench
 from headrace.hooks.brought import missing
@@ -27,7 +29,7 @@ from headrace.testing import closure
 from headrace.testing.compare import difference, plain, resorted
 from headrace.testing.renamed import Renaming, renamed
 from headrace.testing.watch import Call, call, watched
-from headrace.values.answers import Result
+from headrace.values.answers import AddedTable, Result
 from headrace.values.case import Case, Finding
 from headrace.values.facts import Facts
 
@@ -143,12 +145,14 @@ def _closed(trial: Trial) -> Iterator[str]:
     for item in trial.calls:
         grouped[item.hook].append(item)
     for item in grouped["drains"]:
-        drawn = closure.asked(facts, _case(trial), item.arguments["outlet"])
+        drawn = closure.asked(facts, _case(trial), item.arguments["outlet"], item.answer)
         yield from closure.faults(facts, item.answer, drawn)
     for item in grouped["refills"]:
         yield from (finding.message for finding in merge.refills([(_name(trial), item.answer)]).findings)
     for item in grouped["checks"]:
         for finding in item.answer or ():
+            if isinstance(finding, AddedTable):
+                continue
             if not isinstance(finding, Finding) or finding.level not in merge.LEVELS:
                 yield f"checks gives {finding!r:.80}, which is no finding of level {', '.join(merge.LEVELS)}"
 
@@ -195,7 +199,8 @@ def _nameless(trial: Trial) -> Iterator[str]:
 def _under_other_names(folders: tuple[tuple[str, Path], ...]) -> tuple[Renaming, Facts]:
     """All facts with new slugs; kept, since plugins that bring no facts share them."""
     renaming = renamed(fact_files([paths.facts_folder()], folders))
-    return renaming, build_facts(renaming.files, version(renaming.files))
+    rules = rule_texts([paths.facts_folder()], folders)
+    return renaming, completed(build_facts(renaming.files, version(renaming.files)), rules, renaming.files)
 
 
 CHECKS: dict[str, Callable[[Trial], Iterator[str]]] = {

@@ -40,5 +40,7 @@ class Hydroxyglutarate:
                 origin="calculated from the route in the facts",
                 recalled=vector.recalled,
                 readings=vector.readings,
+                draws=dict(outlet.draws),
+                missing=vector.missing,
             ),
         )

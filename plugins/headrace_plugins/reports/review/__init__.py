@@ -9,6 +9,7 @@ from msgspec import Struct
 
 from headrace.api import Document, Result, slugify
 from headrace.pages import csvtext, markdown
+from headrace_plugins.refills.whole_network import EXAMPLE
 from headrace_plugins.reports.review.sections import Review as Sections
 
 
@@ -25,6 +26,7 @@ class Review:
     name = "review"
     summary = "The design-review document as Markdown, with its tables as CSV."
     options = Options
+    example = EXAMPLE
 
     def report(self, result: Result, options: Options) -> Iterator[Document]:
         """The review of a result on refills; other results have no review."""
