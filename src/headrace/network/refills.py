@@ -1,8 +1,8 @@
 """Which refills a case has: open ones with their groups and steps, closed ones with the reason they are closed.
 
 A refill is a reaction outside all routes that makes skeletons in the direction it runs (see `skeletons`); nothing is
-tagged. Refills that fix inorganic carbon in one compartment stand in for one another and form a group; any other
-refill shares a group only with rows of the same reaction in the same compartment.
+tagged. Refills that add inorganic carbon to a precursor in one compartment, by themselves or with the steps that feed
+them, stand in for one another and form a group; any other refill shares one only with rows of the same reaction there.
 """
 
 from __future__ import annotations
@@ -28,6 +28,7 @@ class Refill:
     column: int | None
     kind: str
     reason: str
+    from_precursor: bool = True
 
     @property
     def slug(self) -> str:
@@ -37,7 +38,7 @@ class Refill:
     @property
     def group(self) -> str:
         """Which refills it can stand in for."""
-        return f"carboxylation-{self.compartment}" if self.fixed > 0 else f"{self.reaction}-{self.compartment}"
+        return f"carboxylation-{self.compartment}" if self.fixed > 0 and self.from_precursor else f"{self.reaction}-{self.compartment}"
 
 
 def inorganic_fixed(facts: Facts, reaction: str, sign: int) -> float:
@@ -63,9 +64,9 @@ def open_refills(net: Network) -> tuple[Refill, ...]:
         what = effect(net, j)
         if row.reaction in routes or what.made <= 1e-9:
             continue
-        found.append(Refill(row.slug, row.reaction, column.sign, _where(row), what.made,
-                            inorganic_fixed(net.facts, row.reaction, column.sign), j,
-                            net.case.levels[row.slug].kind, net.case.levels[row.slug].reason))
+        fixed, precursor = _fixed(net, row.slug, column.sign)
+        found.append(Refill(row.slug, row.reaction, column.sign, _where(row), what.made, fixed, j,
+                            net.case.levels[row.slug].kind, net.case.levels[row.slug].reason, precursor))
     return tuple(found)
 
 
@@ -88,13 +89,21 @@ def closed_refills(net: Network) -> tuple[Refill, ...]:
     have = {row.reaction for row in case.rows.values()}
     absent = {a.reaction: a.reason for a in net.host.absences}
     cytosol = next(c.slug for c in net.host.compartments if c.role == "cytosol")
-    for slug, reaction in sorted(facts.reactions.items()):
-        new = any(t.count > 0 and facts.compounds[t.compound].anchor for t in reaction.terms)
-        if new and not reaction.lumped and slug not in have and slug not in routes and not reaction.transport and turnover(facts, slug) > 1e-9:
-            reason = absent.get(slug, "the host's facts do not list it")
-            found.append(Refill(slug, slug, 1, cytosol, turnover(facts, slug), inorganic_fixed(facts, slug, 1), None,
-                                "absent", f"absent: {reason}"))
+    for slug, sign in sorted(_elsewhere(facts) - {(r, s) for r in have for s in (1, -1)}):
+        reason = absent.get(slug, "the host's facts do not list it")
+        found.append(Refill(slug, slug, sign, cytosol, sign * turnover(facts, slug), inorganic_fixed(facts, slug, sign), None,
+                            "absent", f"absent: {reason}"))
     return tuple(found)
+
+
+def _elsewhere(facts: Facts) -> set[tuple[str, int]]:
+    """(reaction, direction) of all refills that some host has: what another host lacks is named from these."""
+    routes = on_route(facts)
+    ways = {"forward": (1,), "reverse": (-1,), "both": (1, -1)}
+    return {(row.reaction, sign) for host in facts.hosts.values() for row in host.reactions for sign in ways[row.direction]
+            if row.reaction not in routes and not facts.reactions[row.reaction].transport
+            and sign * turnover(facts, row.reaction) > 1e-9
+            and any(t.count * sign > 0 and facts.compounds[t.compound].anchor for t in facts.reactions[row.reaction].terms)}
 
 
 def _where(row: HostReaction) -> str:
@@ -102,34 +111,53 @@ def _where(row: HostReaction) -> str:
 
 
 def steps(net: Network, refill: Refill, rates: Iterable[float] | None = None) -> tuple[str, ...]:
-    """The zero-content steps whose flux a refill forces, nearest first (isocitrate lyase for malate synthase).
+    """The zero-content steps whose flux a refill forces, nearest first (isocitrate lyase for malate synthase)."""
+    return tuple(row for row, _ in _walk(net, refill.row, refill.sign, rates)[0])
+
+
+def _walk(net: Network, row: str, sign: int,
+          rates: Iterable[float] | None = None) -> tuple[list[tuple[str, int]], set[str]]:
+    """(steps with their direction, compounds where the walk ends).
 
     Walks back from each taken compound that has no content, is no boundary pool and no coenzyme, as long as one
     reaction alone makes it (of several, the one that runs).
     """
-    chain: list[str] = []
-    row = net.case.rows.get(refill.row)
-    if row is None:
-        return ()
-    wanted = [pool for pool, count in terms_of(net.facts, net.host, row) if count * refill.sign < 0]
+    chain: list[tuple[str, int]] = []
+    ends: set[str] = set()
+    if row not in net.case.rows:
+        return chain, ends
+    wanted = _taken(net, row, sign)
     seen: set[tuple[str, str]] = set()
     x = list(rates) if rates is not None else None
     while wanted and len(chain) < 8:
         pool = wanted.pop(0)
-        if pool in seen or not _intermediate(net, pool):
+        if pool in seen:
             continue
         seen.add(pool)
-        makers = [j for j in _makers(net, pool) if net.columns[j].name != refill.row]
+        if not _intermediate(net, pool):
+            ends.add(pool[0])
+            continue
+        makers = [j for j in _makers(net, pool) if net.columns[j].name != row]
         if x is not None and len(makers) > 1:
             makers = [j for j in makers if x[j] > 1e-9] or makers
         if len({net.columns[j].name for j in makers}) != 1:
             continue
-        maker = net.case.rows[net.columns[makers[0]].name]
-        if maker.slug not in chain:
-            chain.append(maker.slug)
-            sign = net.columns[makers[0]].sign
-            wanted += [p for p, c in terms_of(net.facts, net.host, maker) if c * sign < 0]
-    return tuple(chain)
+        step = (net.columns[makers[0]].name, net.columns[makers[0]].sign)
+        if step not in chain:
+            chain.append(step)
+            wanted += _taken(net, *step)
+    return chain, ends
+
+
+def _taken(net: Network, row: str, sign: int) -> list[tuple[str, str]]:
+    return [pool for pool, count in terms_of(net.facts, net.host, net.case.rows[row]) if count * sign < 0]
+
+
+def _fixed(net: Network, row: str, sign: int) -> tuple[float, bool]:
+    """(inorganic carbon that a refill adds with its steps, whether a precursor stands at their beginning)."""
+    chain, ends = _walk(net, row, sign)
+    fixed = sum(inorganic_fixed(net.facts, net.case.rows[r].reaction, s) for r, s in [(row, sign), *chain])
+    return fixed, any(net.facts.compounds[c].precursor for c in ends)
 
 
 def _intermediate(net: Network, pool: tuple[str, str]) -> bool:

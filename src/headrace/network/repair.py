@@ -171,7 +171,7 @@ def widen(net: Network) -> tuple[Network, list[Candidate]]:
             words[slug] = (*_reopen_words(case, slug, level), slug in closed)
     for refill in refills:
         if refill.kind == "absent":
-            rows[refill.row] = _new_row(facts, refill.row, cytosol_of(net.host))
+            rows[refill.row] = _new_row(facts, refill.row, cytosol_of(net.host), refill.sign)
             levels[refill.row] = Level("on", "added", "tried as a repair")
             words[refill.row] = (f"add {facts.reactions[refill.row].label}", "add", True)
     extra = [c for c in _supplements(net, rows) if c not in {s.compound for s in case.supplements}]
@@ -226,9 +226,9 @@ def _reopen_words(case: Case, slug: str, level: Level) -> tuple[str, str]:
     return f"express {label} ({level.reason})", "express"
 
 
-def _new_row(facts: Facts, reaction: str, place: str) -> HostReaction:
-    about = facts.reactions[reaction]
-    return HostReaction(reaction, about.label, reaction, "forward", Basis("recalled"), place=place)
+def _new_row(facts: Facts, reaction: str, place: str, sign: int) -> HostReaction:
+    direction = "forward" if sign > 0 else "reverse"
+    return HostReaction(reaction, facts.reactions[reaction].label, reaction, direction, Basis("recalled"), place=place)
 
 
 def _crossing(net: Network, rows: dict[str, HostReaction], sign: int) -> Iterator[str]:
