@@ -102,7 +102,10 @@ def test_every_outlet_is_drawn_in_every_host(facts: Facts, books: dict[str, Rout
     for outlet in facts.outlets.values():
         for host, book in books.items():
             vector = book.sum({(name, "cytosol"): count for name, count in outlet.draws.items()})
-            assert vector.skeletons == sum(facts.contents[name] * count for name, count in outlet.draws.items()), (outlet.slug, host)
+            assert vector.skeletons == sum(facts.contents[name] * count for name, count in outlet.draws.items()), (
+                outlet.slug,
+                host,
+            )
 
 
 def test_sums_are_linear(facts: Facts, books: dict[str, RouteBook]) -> None:
@@ -184,7 +187,9 @@ def test_a_reaction_may_be_written_backwards(facts: Facts) -> None:
     turned = {"aspartate-transaminase", "glutamate-dehydrogenase-nadp", "aspartate-kinase", "triose-phosphate-isomerase"}
     flip = {"forward": "reverse", "reverse": "forward", "both": "both"}
     reactions = {
-        slug: msgspec.structs.replace(r, terms=tuple(Term(t.compound, -t.count, t.side) for t in r.terms)) if slug in turned else r
+        slug: msgspec.structs.replace(r, terms=tuple(Term(t.compound, -t.count, t.side) for t in r.terms))
+        if slug in turned
+        else r
         for slug, r in facts.reactions.items()
     }
     hosts = {
@@ -244,8 +249,16 @@ def test_a_reaction_in_two_places_needs_its_row(facts: Facts) -> None:
 
 
 def test_a_carrier_that_the_host_lacks_is_a_fault(facts: Facts) -> None:
-    route = Route("x", "x", "lysine", (*facts.routes["lysine-by-diaminopimelate"].uses, "homocitrate-entry"),
-                  facts.routes["lysine-by-diaminopimelate"].basis, ("escherichia-coli",), (), True)
+    route = Route(
+        "x",
+        "x",
+        "lysine",
+        (*facts.routes["lysine-by-diaminopimelate"].uses, "homocitrate-entry"),
+        facts.routes["lysine-by-diaminopimelate"].basis,
+        ("escherichia-coli",),
+        (),
+        True,
+    )
     with pytest.raises(FactsError, match="uses the carrier homocitrate-entry, which escherichia-coli lacks"):
         given = msgspec.structs.replace(facts, routes={**facts.routes, "x": route})
         RouteBook.of_host(given, "escherichia-coli").vector("lysine", chosen=["x"])
