@@ -17,6 +17,7 @@ from headrace.network.build import Network
 from headrace.network.requirement import require
 from headrace.network.routes import RouteBook, RouteVector
 from headrace.values.answers import (
+    AddedTable,
     Answer,
     CompartmentLedger,
     Crossing,
@@ -34,6 +35,7 @@ from headrace.values.answers import (
     Repair,
     Result,
     Shortage,
+    TableColumn,
 )
 from headrace.values.case import Case, Demand, Feed, Finding, Level, Limit, Supplement
 from headrace.values.changes import Add, Change, Close, LetOut, Raise, Reopen, Scale, Supply, Unrule
@@ -42,6 +44,7 @@ from headrace.values.facts import Compound, Facts, Host, HostReaction, Outlet, R
 __all__ = [
     "LEVELS",
     "Add",
+    "AddedTable",
     "Answer",
     "Bench",
     "Case",
@@ -88,6 +91,7 @@ __all__ = [
     "Shortage",
     "Supplement",
     "Supply",
+    "TableColumn",
     "Unrule",
     "exact",
     "nearest",

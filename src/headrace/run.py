@@ -56,8 +56,8 @@ class Desk:
         case = self.case(question)
         draws = self.plugins.drains(case, _outlets(case), RouteBook(self.facts, case))
         rows = drain_rows(self.facts, draws, _scalars(case))
-        findings = self.plugins.checks(case, draws, (), rows)
-        return self._result("drains", case, draws, rows, None, case.findings + findings)
+        said = self.plugins.checks(case, draws, (), rows, self.facts)
+        return self._result("drains", case, draws, rows, None, case.findings + said.findings, said.tables)
 
     def refills(self, question: Question, progress: Progress = lambda words: None, ranges: bool = False) -> Result:
         """The ledger, the requirement of each refill, and why closed ones are closed. ranges: of every rate, too."""
@@ -76,9 +76,10 @@ class Desk:
             answer = msgspec.structs.replace(answer, rates=rate_ranges(network))
         rows = answer.drains or drain_rows(self.facts, draws, answer.scalars or _scalars(case))
         answers = (answer, *(other for _, other in merged.others))
-        said = self.plugins.checks(case, draws, answers, rows)
-        findings = case.findings + answer.findings + merged.findings + said
-        return self._result("refills", case, draws, rows, msgspec.structs.replace(answer, findings=findings), findings)
+        said = self.plugins.checks(case, draws, answers, rows, self.facts)
+        findings = case.findings + answer.findings + merged.findings + said.findings
+        answer = msgspec.structs.replace(answer, findings=findings)
+        return self._result("refills", case, draws, rows, answer, findings, said.tables)
 
     def ceiling(self, question: Question, outlet: str = "", growth: float = 0.0) -> Result:
         """Largest yields of one outlet of the scenario (default: its only one). growth in 1/h."""
@@ -95,9 +96,9 @@ class Desk:
         answer = find_growth(self.facts, case)
         return self._result("grows", case, (), (), answer, case.findings + answer.findings)
 
-    def _result(self, kind: str, case: Case, draws: Any, rows: Any, answer: Any, findings: Any) -> Result:
+    def _result(self, kind: str, case: Case, draws: Any, rows: Any, answer: Any, findings: Any, tables: Any = ()) -> Result:
         return Result(kind, case, self.facts.version, self.facts, tuple(draws), tuple(rows), answer,
-                      tuple(dict.fromkeys(findings)), tuple(sorted(self.plugins.used)))
+                      tuple(dict.fromkeys(findings)), tuple(sorted(self.plugins.used)), tables=tuple(tables))
 
 
 def _outlets(case: Case) -> Any:

@@ -16,8 +16,20 @@ from headrace.hooks.manager import Manager, survey
 from headrace.hooks.strangers import Pointer
 from headrace.hooks.table import FIRST_PARTY
 from headrace.values.case import Case, Demand, Finding
-from headrace.values.facts import Outlet
+from headrace.values.facts import Facts, Outlet
 
+FACTS = Facts(
+    version="none",
+    compounds={},
+    reactions={},
+    enzymes={},
+    hosts={},
+    outlets={},
+    routes={},
+    sources={},
+    circumstances={},
+    units={},
+)
 MODULE = '''
 from pathlib import Path
 from msgspec import Struct
@@ -113,14 +125,14 @@ def test_shipped_plugins_are_imported_only_when_asked_for(strangers: str) -> Non
     entry = Entry("careful", strangers, "Careful", "Notes something.", ("checks",))
     loaded = Manager(first_party=[entry], trace=False)
     assert strangers not in sys.modules
-    assert loaded.checks(case(), (), (), ())[0].message == "looked at"
+    assert loaded.checks(case(), (), (), (), FACTS).findings[0].message == "looked at"
     assert strangers in sys.modules
 
 
 def test_a_table_that_is_stale_refuses_the_plugin(strangers: str) -> None:
     entry = Entry("careful", strangers, "Careful", "An older summary.", ("checks",))
     loaded = Manager(first_party=[entry], trace=False)
-    found = loaded.checks(case(), (), (), ())
+    found = loaded.checks(case(), (), (), (), FACTS).findings
     assert "table.py differ" in found[0].message
     assert [refusal.name for refusal in loaded.refused] == ["careful"]
 
@@ -131,7 +143,7 @@ def test_a_wrong_plugin_is_refused_and_the_rest_go_on(strangers: str) -> None:
     reasons = {refusal.name: refusal.reason for refusal in loaded.refused}
     assert "the hook is 'checks'" in reasons["misspelt"]
     assert "AttributeError" in reasons["missing"]
-    found = loaded.checks(case(), (), (), ())
+    found = loaded.checks(case(), (), (), (), FACTS).findings
     assert [finding.level for finding in found] == ["caution", "caution", "note"]
     assert "misspelt of far-away is not used" in found[0].message
 
@@ -180,7 +192,7 @@ def test_an_outlet_without_a_claimant_is_an_error_that_names_it(strangers: str) 
 
 
 def test_a_check_that_fails_is_a_caution_and_the_others_still_speak(strangers: str) -> None:
-    found = manager(strangers, "Failing", "Careful").checks(case(), (), (), ())
+    found = manager(strangers, "Failing", "Careful").checks(case(), (), (), (), FACTS).findings
     assert [finding.level for finding in found] == ["caution", "note"]
     assert "plugin failing: failed in checks: ZeroDivisionError: division by zero" in found[0].message
 
@@ -191,7 +203,7 @@ def test_a_drain_that_fails_is_an_error_with_the_plugins_name(strangers: str) ->
 
 
 def test_the_trace_shows_each_call(strangers: str, capsys: pytest.CaptureFixture[str]) -> None:
-    manager(strangers, "Careful", "Failing", trace=True).checks(case(), (), (), ())
+    manager(strangers, "Careful", "Failing", trace=True).checks(case(), (), (), (), FACTS)
     shown = capsys.readouterr().err
     assert "headrace: checks of careful: 1 given, " in shown
     assert "ZeroDivisionError" in shown
@@ -203,7 +215,7 @@ def test_the_trace_is_switched_by_the_environment(
     pointers = [Pointer("careful", strangers, "Careful", "far-away")]
     for value, lines in (("1", 1), ("0", 0), ("", 0)):
         monkeypatch.setenv("HEADRACE_TRACE", value)
-        Manager(first_party=(), pointers=pointers).checks(case(), (), (), ())
+        Manager(first_party=(), pointers=pointers).checks(case(), (), (), (), FACTS)
         assert len(capsys.readouterr().err.splitlines()) == lines
 
 

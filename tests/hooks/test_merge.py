@@ -9,7 +9,7 @@ import pytest
 
 from headrace.errors import PluginError
 from headrace.hooks import merge
-from headrace.values.answers import Document, Draw, Ledger, LedgerRow, PoolTerm, RefillAnswer
+from headrace.values.answers import AddedTable, Document, Draw, Ledger, LedgerRow, PoolTerm, RefillAnswer, TableColumn
 from headrace.values.case import Demand, Finding
 
 OUTLET = Demand("cadaverine", "cadaverine", "diamines", {}, "cytosol", rate=1.0)
@@ -147,3 +147,35 @@ def test_two_documents_never_share_a_name() -> None:
         merge.documents([("one", [Document("a.md", "", "")]), ("two", [Document("A.md", "", "")])])
     with pytest.raises(PluginError, match="report gave str"):
         merge.documents([("one", ["text"])])
+
+
+def table(key: str = "sizes", rows: tuple[tuple[float, ...], ...] = ((1.0,),)) -> AddedTable:
+    return AddedTable(key, "Sizes", (TableColumn("size", "size", "m", number=True),), rows)
+
+
+def test_tables_stand_apart_from_findings() -> None:
+    note = Finding("note", "one", "about", "said")
+    found = merge.said([("one", [note, table()]), ("two", (table("others"),)), ("three", None)])
+    assert found.findings == (note,)
+    assert [each.key for each in found.tables] == ["sizes", "others"]
+
+
+@pytest.mark.parametrize(
+    ("wrong", "reason"),
+    [
+        (table("ledger"), "has a key that is taken"),
+        (table("no name"), "has a key that is taken or is no plain name"),
+        (table(rows=((1.0, 2.0),)), "has a row of another length"),
+    ],
+)
+def test_a_wrong_table_is_a_stop(wrong: AddedTable, reason: str) -> None:
+    found = merge.said([("one", [wrong])])
+    assert not found.tables
+    assert found.findings[0].level == "stop"
+    assert reason in found.findings[0].message
+
+
+def test_two_tables_of_one_key_are_a_stop() -> None:
+    found = merge.said([("one", [table()]), ("two", [table()])])
+    assert len(found.tables) == 1
+    assert "plugin two" in found.findings[0].message

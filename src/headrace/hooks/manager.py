@@ -26,7 +26,7 @@ from headrace.hooks.table import FIRST_PARTY
 from headrace.names import nearest
 from headrace.values.answers import Document, DrainRow, Draw, RefillAnswer, Result
 from headrace.values.case import Case, Demand, Finding
-from headrace.values.facts import Outlet
+from headrace.values.facts import Facts, Outlet
 
 if TYPE_CHECKING:
     from headrace.hooks.bench import Bench
@@ -151,11 +151,16 @@ class Manager:
         return merge.refills(answers, failures)
 
     def checks(
-        self, case: Case, draws: tuple[Draw, ...], answers: Sequence[RefillAnswer], rows: Sequence[DrainRow]
-    ) -> tuple[Finding, ...]:
-        """What all checks say, with the manager's own cautions: stops first, then cautions, then notes."""
-        found, failures = self._each("checks", case=case, draws=draws, answers=tuple(answers), rows=tuple(rows))
-        return merge.findings([*found, ("plugins", failures), ("plugins", self.findings())])
+        self,
+        case: Case,
+        draws: tuple[Draw, ...],
+        answers: Sequence[RefillAnswer],
+        rows: Sequence[DrainRow],
+        facts: Facts,
+    ) -> merge.Said:
+        """What all checks say, with the manager's own cautions: stops first, then cautions, then notes; and their tables."""
+        found, failures = self._each("checks", case=case, draws=draws, answers=tuple(answers), rows=tuple(rows), facts=facts)
+        return merge.said([*found, ("plugins", failures), ("plugins", self.findings())])
 
     def report(self, result: Result, only: Sequence[str] = ()) -> tuple[Document, ...]:
         """The documents of all report plugins, or of those named. Raises PluginError when one fails or two clash."""

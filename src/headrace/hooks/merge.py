@@ -12,7 +12,7 @@ from typing import Any
 from msgspec import Struct
 
 from headrace.errors import PluginError
-from headrace.values.answers import Document, Draw, Ledger, RefillAnswer
+from headrace.values.answers import AddedTable, Document, Draw, Ledger, RefillAnswer
 from headrace.values.case import Demand, Finding
 
 LEVELS = ("stop", "caution", "note")
@@ -20,6 +20,10 @@ _LEFT = ("drained", "released", "removed")
 _RIGHT = ("refilled", "supplied")
 _SAME = 1e-6  # relative; two methods that solve to 1e-9 agree far better
 _CLOSED = 1e-9  # absolute, mmol/gDW/h, and relative to the largest term
+TAKEN = frozenset(  # the keys of an answer in JSON, which no table may have; a test holds them to the output
+    "scenario host findings versions plugins answer aim units drains draws ledger groups refills removals feed crossings drawn "
+    "shortage repairs closure energy demands surplus_carbon cycling_cap design_cover rates".split()
+)
 
 
 class Merged(Struct, frozen=True):
@@ -29,6 +33,13 @@ class Merged(Struct, frozen=True):
     answer: RefillAnswer
     others: tuple[tuple[str, RefillAnswer], ...]
     findings: tuple[Finding, ...]
+
+
+class Said(Struct, frozen=True):
+    """What the checks say: findings, stops first, and tables in the order given."""
+
+    findings: tuple[Finding, ...]
+    tables: tuple[AddedTable, ...] = ()
 
 
 class Totals(Struct, frozen=True):
@@ -76,6 +87,21 @@ def refills(answers: Sequence[tuple[str, Any]], failures: Sequence[Finding] = ()
     return Merged(method, answer, tuple(answers[1:]), tuple(found))
 
 
+def said(proposals: Sequence[tuple[str, Any]]) -> Said:
+    """Findings and tables apart. A table whose key is taken, or that is no rectangle, is a stop that names the plugin."""
+    tables: dict[str, AddedTable] = {}
+    rest: list[tuple[str, Any]] = []
+    for plugin, proposed in proposals:
+        given = list(proposed) if proposed is not None else []
+        for table in (item for item in given if isinstance(item, AddedTable)):
+            if fault := _table_fault(table, tables):
+                given.append(Finding("stop", "plugins", plugin, f"plugin {plugin}: its table {table.key!r} {fault}"))
+            else:
+                tables[table.key] = table
+        rest.append((plugin, [item for item in given if not isinstance(item, AddedTable)]))
+    return Said(findings(rest), tuple(tables.values()))
+
+
 def findings(proposals: Iterable[tuple[str, Any]]) -> tuple[Finding, ...]:
     """All findings, each once: stops first, then cautions, then notes, in the order given.
 
@@ -116,6 +142,15 @@ def totals(ledger: Ledger) -> Totals:
     right = sum(by_kind.get(kind, 0.0) for kind in _RIGHT)
     made = by_kind.get("refilled", 0.0) - by_kind.get("removed", 0.0)
     return Totals(by_kind.get("drained", 0.0), made, left - right, max(1.0, left, right))
+
+
+def _table_fault(table: AddedTable, known: dict[str, AddedTable]) -> str:
+    """What is wrong with a table; "" if nothing is. The keys of an answer itself are taken."""
+    if not table.key.isidentifier() or table.key in known or table.key in TAKEN:
+        return "has a key that is taken or is no plain name"
+    if len({column.key for column in table.columns}) < len(table.columns):
+        return "has two columns of one key"
+    return "" if all(len(row) == len(table.columns) for row in table.rows) else "has a row of another length than its columns"
 
 
 def _check_draw(plugin: str, draw: Draw) -> None:

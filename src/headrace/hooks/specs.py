@@ -12,8 +12,9 @@ if TYPE_CHECKING:
     from headrace.hooks.bench import Bench
     from headrace.network.build import Network
     from headrace.network.routes import RouteBook
-    from headrace.values.answers import Document, DrainRow, Draw, RefillAnswer, Result
+    from headrace.values.answers import AddedTable, Document, DrainRow, Draw, RefillAnswer, Result
     from headrace.values.case import Case, Demand, Finding
+    from headrace.values.facts import Facts
 
 PROJECT = "headrace"
 spec = pluggy.HookspecMarker(PROJECT)
@@ -36,9 +37,9 @@ class Hooks:
 
     @spec
     def checks(  # type: ignore[empty-body]
-        self, case: Case, draws: tuple[Draw, ...], answers: Sequence[RefillAnswer], rows: Sequence[DrainRow]
-    ) -> Iterable[Finding]:
-        """Notes, cautions and stops about a case that is answered; nothing in the answer may change."""
+        self, case: Case, draws: tuple[Draw, ...], answers: Sequence[RefillAnswer], rows: Sequence[DrainRow], facts: Facts
+    ) -> Iterable[Finding | AddedTable]:
+        """Notes, cautions, stops and tables about a case that is answered; nothing in the answer may change."""
 
     @spec
     def report(self, result: Result, options: Any) -> Iterable[Document]:  # type: ignore[empty-body]

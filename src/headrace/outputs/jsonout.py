@@ -13,7 +13,7 @@ from typing import Any
 import msgspec
 
 from headrace.pages.notes import collected
-from headrace.values.answers import CeilingAnswer, DrainRow, Draw, GrowsAnswer, Ledger, RefillAnswer, RefillRow, Result
+from headrace.values.answers import AddedTable, CeilingAnswer, DrainRow, Draw, GrowsAnswer, Ledger, RefillAnswer, RefillRow, Result
 
 UNITS = {
     "rate": "mmol/gDW/h",
@@ -38,14 +38,28 @@ def document(result: Result, headrace: str, rates: bool = False) -> dict[str, An
         "ceiling": _ceiling,
         "grows": _grows,
     }
+    found = build[result.kind](result, rates)
+    if result.tables:
+        found["units"]["tables"] = {each.key: _table_units(each) for each in result.tables}
     return {
         "scenario": result.case.title,
         "host": result.case.host,
-        **build[result.kind](result, rates),
+        **found,
+        **{each.key: _table(each) for each in result.tables},
         "findings": [msgspec.structs.asdict(finding) for finding in collected(result)],
         "versions": {"headrace": headrace, "facts": result.facts_version},
         "plugins": list(result.plugins),
     }
+
+
+def _table(table: AddedTable) -> list[dict[str, Any]]:
+    """A table that a check adds: one object per row."""
+    keys = [column.key for column in table.columns]
+    return [dict(zip(keys, row, strict=True)) for row in table.rows]
+
+
+def _table_units(table: AddedTable) -> dict[str, str]:
+    return {column.key: column.unit for column in table.columns if column.unit}
 
 
 def _units() -> dict[str, Any]:

@@ -253,12 +253,36 @@ class GrowsAnswer(Struct, frozen=True):
     findings: tuple[Finding, ...] = ()
 
 
+class TableColumn(Struct, frozen=True):
+    """key: name in JSON; title: heading for people; unit of its numbers. detail: left out on a terminal."""
+
+    key: str
+    title: str
+    unit: str = ""
+    number: bool = False
+    detail: bool = False
+
+
+class AddedTable(Struct, frozen=True):
+    """A table that a check adds to an answer. key: its key in JSON, unlike any other; cells are text, numbers, yes or no, None.
+
+    note: a sentence below it; empty: what is said when there are no rows.
+    """
+
+    key: str
+    title: str
+    columns: tuple[TableColumn, ...]
+    rows: tuple[tuple[str | float | bool | None, ...], ...]
+    note: str = ""
+    empty: str = ""
+
+
 class Result(Struct, frozen=True):
     """One question answered. kind: drains | refills | ceiling | grows; answer is None for drains.
 
     facts_version: hash of all facts used. plugins: names of the plugins that took part. facts: what the answer was
     made from (labels, sources and readings for whoever shows it). related: answers to other questions on the same
-    scenario that a report shows beside this one (the ceiling of each outlet).
+    scenario that a report shows beside this one (the ceiling of each outlet). tables: what checks add.
     """
 
     kind: str
@@ -271,6 +295,7 @@ class Result(Struct, frozen=True):
     findings: tuple[Finding, ...] = ()
     plugins: tuple[str, ...] = ()
     related: tuple[Result, ...] = ()
+    tables: tuple[AddedTable, ...] = ()
 
 
 class Document(Struct, frozen=True):
