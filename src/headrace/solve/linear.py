@@ -75,6 +75,23 @@ class Solution:
         return self.status == "optimal"
 
 
+LOWER, BASIC, UPPER, ZERO = 0, 1, 2, 3
+_PLACES = {
+    highspy.HighsBasisStatus.kLower: LOWER,
+    highspy.HighsBasisStatus.kBasic: BASIC,
+    highspy.HighsBasisStatus.kUpper: UPPER,
+    highspy.HighsBasisStatus.kZero: ZERO,
+}
+
+
+@dataclass(frozen=True)
+class Basis:
+    """Where each column and each row stands at a vertex: LOWER or UPPER bound, BASIC, or ZERO (free and out of the basis)."""
+
+    columns: Ints
+    rows: Ints
+
+
 class Session:
     """One programme kept warm in HiGHS. Bound changes last until changed again; `row` adds one row for good."""
 
@@ -114,6 +131,18 @@ class Session:
     def feasible(self) -> bool:
         """Whether any x satisfies all bounds."""
         return self.minimise(np.zeros(self.columns)).optimal
+
+    def basis(self) -> Basis:
+        """The basis that the last solve ended on. Raises RuntimeError when it left none."""
+        found = self._highs.getBasis()
+        if not found.valid:
+            raise RuntimeError("the last solve left no basis")
+        places = [np.array([_PLACES[each] for each in part], dtype=np.int32) for part in (found.col_status, found.row_status)]
+        return Basis(*places)
+
+    def entry(self, row: int, column: int, value: float) -> None:
+        """Set one coefficient of A (in the solver only: `programme` stays as it was)."""
+        self._highs.changeCoeff(row, column, value)
 
     def bound(self, column: int, lower: float, upper: float) -> None:
         """Set one column's bounds."""

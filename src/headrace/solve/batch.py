@@ -1,0 +1,222 @@
+"""One programme under many bounds: an optimal basis is kept, and serves every point at which it stays feasible.
+
+    minimise c x   subject to   row_lower_k <= A x <= row_upper_k,   col_lower_k <= x <= col_upper_k     for k = 1 .. N
+
+Bounds on rows and columns differ from point to point, A and c do not: then reduced costs do not change, and a basis that is
+optimal at one point is optimal wherever its basic values stay within bounds (checked for all points at once). Points that
+no kept basis serves go to the warm solver, whose basis is kept in turn. Where a basis does not pay for its factors, the
+solver alone goes on. Points with other coefficients in A go to the solver one by one.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from headrace.solve.linear import BASIC, LOWER, UPPER, Basis, Floats, Programme, Session
+
+Places = NDArray[np.intp]
+Flags = NDArray[np.bool_]
+
+_TOLERANCE = 1e-9
+_CHUNK = 1024
+_PATIENCE = 12  # bases in a row that serve fewer points than _WORTH: then no more are kept for this chunk
+_WORTH = 4
+
+
+@dataclass(frozen=True)
+class Points:
+    """N points. Variables are the columns, then the rows (their sums A x).
+
+    varying: (v) variables whose bounds differ from the programme's; lower, upper: (N, v) their bounds.
+    entries: (row, column) of the coefficients that differ; values: (N, entries).
+    """
+
+    varying: Places
+    lower: Floats
+    upper: Floats
+    entries: tuple[tuple[int, int], ...] = ()
+    values: Floats = field(default_factory=lambda: np.zeros((0, 0)))
+
+    def __len__(self) -> int:
+        return len(self.lower)
+
+
+@dataclass(frozen=True)
+class Solved:
+    """optimal: (N) flags; objective: (N); read: (N, k) weighted sums of x. NaN where not optimal.
+
+    solves: how many points went to the solver; bases: how many bases were kept.
+    """
+
+    optimal: Flags
+    objective: Floats
+    read: Floats
+    solves: int
+    bases: int
+
+
+def solve(programme: Programme, cost: Floats, points: Points, weights: Floats,
+          step: Callable[[int], None] = lambda done: None) -> Solved:
+    """Solve all points. weights: (k, columns), what to read of each x. step is told how many points are done."""
+    table = _Table(np.vstack([cost, weights]), len(points))
+    session, kept = _Warm(programme, cost), list[_Vertex]()
+    for start in range(0, len(points), _CHUNK):
+        end = min(start + _CHUNK, len(points))
+        left, poor = np.arange(start, end), 0
+        for vertex in kept:
+            left = table.fill(vertex, points, left)
+        while len(left):
+            at, left = int(left[0]), left[1:]
+            table.put(at, session.at(points, at))
+            if table.optimal[at] and not points.entries and poor < _PATIENCE and len(left):
+                before, vertex_ = len(left), _vertex(programme, cost, session.basis(), points)
+                left = left if vertex_ is None else table.fill(vertex_, points, left)
+                worth = before - len(left) >= _WORTH
+                kept += [vertex_] if vertex_ is not None and worth else []
+                poor = 0 if worth else poor + 1
+            step(end - len(left))
+        step(end)
+    return Solved(table.optimal, table.read[:, 0], table.read[:, 1:], table.solves, len(kept))
+
+
+def with_row(programme: Programme, coefficients: Floats) -> Programme:
+    """The programme with one more row, unbounded until a point bounds it. coefficients: (columns)."""
+    last = len(programme.row_lower)
+    rows = np.split(programme.rows, programme.starts[1:-1])
+    values = np.split(programme.values, programme.starts[1:-1])
+    for j in np.flatnonzero(coefficients):
+        rows[j] = np.append(rows[j], np.int32(last))
+        values[j] = np.append(values[j], coefficients[j])
+    starts = np.concatenate([[0], np.cumsum([len(each) for each in rows])]).astype(np.int32)
+    return Programme(starts, np.concatenate(rows).astype(np.int32), np.concatenate(values),
+                     np.append(programme.row_lower, -np.inf), np.append(programme.row_upper, np.inf),
+                     programme.col_lower, programme.col_upper)
+
+
+class _Table:
+    """The answers, as they come in. weights: what to read of each x, one row each."""
+
+    def __init__(self, weights: Floats, number: int) -> None:
+        self.weights, self.solves = weights, 0
+        self.optimal, self.read = np.zeros(number, dtype=bool), np.full((number, len(weights)), np.nan)
+
+    def put(self, at: int, x: Floats | None) -> None:
+        """One answer of the solver."""
+        self.solves += 1
+        if x is not None:
+            self.optimal[at], self.read[at] = True, self.weights @ x
+
+    def fill(self, vertex: _Vertex, points: Points, left: Places) -> Places:
+        """Fill in what a vertex serves, and return what is left."""
+        if not len(left):
+            return left
+        good, read = vertex.serve(points, left, self.weights)
+        self.optimal[left[good]], self.read[left[good]] = True, read[good]
+        return left[~good]
+
+
+@dataclass(frozen=True)
+class _Vertex:
+    """A basis with its inverse: basic = constant + moves @ (values of the non-basic variables whose bounds vary).
+
+    driven: positions in `varying` of those, and at_upper: at which of their bounds they stand. lower, upper: the bounds of the
+    basic variables by the programme; watched: pairs (position among the basic ones, position in `varying`) of those that vary.
+    resting: values of all columns that are not basic and do not vary, else 0. width: number of columns.
+    """
+
+    basic: Places
+    constant: Floats
+    moves: Floats
+    driven: Places
+    at_upper: Flags
+    lower: Floats
+    upper: Floats
+    watched: tuple[Places, Places]
+    resting: Floats
+    width: int
+
+    def serve(self, points: Points, chosen: Places, weights: Floats) -> tuple[Flags, Floats]:
+        """Per chosen point: whether the vertex is feasible there, and what the weights read of x."""
+        out = np.where(self.at_upper, points.upper[np.ix_(chosen, self.driven)], points.lower[np.ix_(chosen, self.driven)])
+        known = np.isfinite(out).all(axis=1)
+        out[~known] = 0.0
+        basic = self.constant + out @ self.moves.T
+        slack = _TOLERANCE * (1 + np.abs(basic).max(axis=1, initial=0.0))[:, None]
+        fixed = np.ones(len(self.basic), dtype=bool)
+        fixed[self.watched[0]] = False
+        inside = (basic >= self.lower - slack) & (basic <= self.upper + slack) | ~fixed
+        moved = basic[:, self.watched[0]]
+        low, high = (part[np.ix_(chosen, self.watched[1])] for part in (points.lower, points.upper))
+        good = known & inside.all(axis=1) & ((moved >= low - slack) & (moved <= high + slack)).all(axis=1)
+        here = self.basic < self.width
+        columns = points.varying[self.driven]
+        there = columns < self.width
+        read = basic[:, here] @ weights[:, self.basic[here]].T + out[:, there] @ weights[:, columns[there]].T
+        return good, read + weights @ self.resting
+
+
+class _Warm:
+    """A session that remembers which bounds it was given last."""
+
+    def __init__(self, programme: Programme, cost: Floats) -> None:
+        self._session, self._cost, self._width = Session(programme), cost, len(programme.col_lower)
+        lower, upper = _bounds(programme)
+        self._given = np.column_stack([lower, upper])
+
+    def basis(self) -> Basis:
+        return self._session.basis()
+
+    def at(self, points: Points, k: int) -> Floats | None:
+        """x at point k; None when the solver finds none."""
+        for variable, low, high in zip(points.varying, points.lower[k], points.upper[k], strict=True):
+            if (self._given[variable] != (low, high)).any():
+                bound = self._session.bound if variable < self._width else self._session.bound_row
+                bound(int(variable) - (0 if variable < self._width else self._width), float(low), float(high))
+                self._given[variable] = low, high
+        for (row, column), value in zip(points.entries, points.values[k] if points.entries else (), strict=True):
+            self._session.entry(row, column, float(value))
+        found = self._session.minimise(self._cost)
+        return found.x if found.optimal else None
+
+
+def _bounds(programme: Programme) -> tuple[Floats, Floats]:
+    """Lower and upper bounds of columns, then rows."""
+    return (np.concatenate([programme.col_lower, programme.row_lower]),
+            np.concatenate([programme.col_upper, programme.row_upper]))
+
+
+def _vertex(programme: Programme, cost: Floats, basis: Basis, points: Points) -> _Vertex | None:
+    """The basis' inverse; None if it is singular or its reduced costs have the wrong sign for bounds that are no equalities."""
+    n, m = len(programme.col_lower), len(programme.row_lower)
+    lower, upper = _bounds(programme)
+    places = np.concatenate([basis.columns, basis.rows])
+    basic, out = np.flatnonzero(places == BASIC), np.flatnonzero(places != BASIC)
+    wide = np.zeros((m, n + m))
+    wide[programme.rows, np.repeat(np.arange(n), np.diff(programme.starts))] = programme.values
+    wide[np.arange(m), n + np.arange(m)] = -1.0
+    try:
+        moves: Floats = -np.asarray(np.linalg.solve(wide[:, basic], wide[:, out]), dtype=np.float64)
+    except np.linalg.LinAlgError:
+        return None
+    same = lower == upper
+    same[points.varying] = (points.lower == points.upper).all(axis=0)
+    costs = np.concatenate([cost, np.zeros(m)])
+    reduced = costs[out] + costs[basic] @ moves
+    bounded = np.isin(places[out], (LOWER, UPPER))
+    wrong = np.where(bounded, np.where(places[out] == UPPER, reduced, -reduced), np.abs(reduced)) > 1e-7
+    if (wrong & ~same[out]).any():
+        return None
+    varies = np.isin(out, points.varying) & bounded
+    at = np.where(places[out] == UPPER, upper[out], lower[out])
+    still = np.where(bounded & ~varies, at, 0.0)
+    resting = np.zeros(n)
+    resting[out[out < n]] = still[out < n]
+    order = {int(variable): position for position, variable in enumerate(points.varying)}
+    watched = [(i, order[int(variable)]) for i, variable in enumerate(basic) if int(variable) in order]
+    pairs = np.array(watched, dtype=np.intp).reshape(-1, 2)
+    return _Vertex(basic, moves @ still, moves[:, varies], np.array([order[int(v)] for v in out[varies]], dtype=np.intp),
+                   places[out][varies] == UPPER, lower[basic], upper[basic], (pairs[:, 0], pairs[:, 1]), resting, n)
