@@ -11,12 +11,14 @@ from collections import Counter
 from collections.abc import Iterator, Sequence
 from textwrap import wrap
 
+from headrace.pages.citing import DAGGER
 from headrace.pages.model import Block, Cell, Column, Page, Table, Verbatim
 from headrace.pages.numbers import UNKNOWN, counted, show
 
 _INDENT = "  "
 _GAP = "  "
 _NARROWEST = 9
+_TIED = (f" {DAGGER}", f"\N{NO-BREAK SPACE}{DAGGER}")
 _PIECE = re.compile(r"[^\s-]+-?|-")  # what a line break can't part: words, and the parts of words with hyphens
 
 
@@ -36,7 +38,7 @@ def page(page: Page, width: int = 100) -> str:
     elif page.sources:
         lines += wrap(f"{counted(len(page.sources), 'source')}: listed with --format md and in the review.", width)
     if page.versions:
-        lines.append(page.versions)
+        lines += wrap(page.versions, width, subsequent_indent=_INDENT)
     return "\n".join(line.rstrip() for line in lines) + "\n"
 
 
@@ -155,7 +157,9 @@ def _widths(columns: Sequence[Column], heads: list[list[str]], texts: list[list[
 
 
 def _fold(lines: Sequence[str], width: int) -> list[str]:
-    return [piece for line in lines for piece in (wrap(line, width) if len(line) > width else [line])] or [""]
+    """Lines of at most `width` where words allow; a dagger stays with its word."""
+    pieces = [piece for line in lines for piece in (wrap(line.replace(*_TIED), width) if len(line) > width else [line])]
+    return [piece.replace(*reversed(_TIED)) for piece in pieces] or [""]
 
 
 def _line(

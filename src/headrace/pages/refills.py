@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 from headrace.pages import ledger
+from headrace.pages.added import added
 from headrace.pages.context import CARBON, RATE, Context, versions
 from headrace.pages.infeasible import repairs, shortage
 from headrace.pages.model import Block, Cell, Column, Notes, Page, Table
-from headrace.pages.added import added
 from headrace.pages.notes import findings
 from headrace.pages.numbers import joined, show
 from headrace.pages.verdicts import refills as verdict

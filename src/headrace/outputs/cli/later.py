@@ -9,7 +9,7 @@ import typer
 from headrace.errors import InputError
 
 NAMES = ("compare", "sweep", "serve")
-_ANYTHING = {"allow_extra_args": True, "ignore_unknown_options": True, "help_option_names": []}
+REFUSED = {"allow_extra_args": True, "ignore_unknown_options": True, "help_option_names": []}
 
 
 def _refusal(name: str) -> Callable[[typer.Context], None]:
@@ -23,4 +23,4 @@ def _refusal(name: str) -> Callable[[typer.Context], None]:
 def register(app: typer.Typer) -> None:
     """Add a refusal for each, hidden from the help."""
     for name in NAMES:
-        app.command(name, hidden=True, context_settings=_ANYTHING)(_refusal(name))
+        app.command(name, hidden=True, context_settings=REFUSED)(_refusal(name))

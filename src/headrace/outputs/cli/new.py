@@ -7,7 +7,9 @@ from typing import Annotated
 
 import typer
 
+from headrace.errors import InputError
 from headrace.outputs import files
+from headrace.outputs.cli.later import REFUSED
 from headrace.outputs.cli.shared import desk
 from headrace.outputs.cli.terminal import emit
 
@@ -30,10 +32,16 @@ def scenario(host: HostName = "", feed: Substrate = "", outlet: Product = "", ou
     return 0
 
 
+def plugin(context: typer.Context) -> None:
+    """Not built yet."""
+    raise InputError("headrace new plugin is not built yet", hint="examples/plugin is a whole one to start from")
+
+
 def register(app: typer.Typer) -> None:
     """Add the group."""
     group = typer.Typer(help="Files to start from.", no_args_is_help=True, rich_markup_mode=None)
     group.command()(scenario)
+    group.command(hidden=True, context_settings=REFUSED)(plugin)
     app.add_typer(group, name="new")
     group.callback()(about)
 
