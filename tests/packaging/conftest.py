@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import os
 import sys
 from collections.abc import Mapping
 from pathlib import Path
@@ -10,7 +9,7 @@ from typing import Any
 
 import pytest
 
-from tests.packaging.install import ROOT, SCENARIOS, Answers, Clean, answer, wheel
+from tests.packaging.install import CHECKOUT, ROOT, SCENARIOS, Answers, Clean, answer, wheel
 
 
 def pytest_collection_modifyitems(items: list[pytest.Item]) -> None:
@@ -37,17 +36,16 @@ def clean(built: Path, tmp_path_factory: pytest.TempPathFactory) -> Clean:
 @pytest.fixture(scope="session")
 def answers(clean: Clean) -> Answers:
     """Made before a stranger's plugin changes the version of the facts."""
-    here = {"PYTHONPATH": os.pathsep.join((str(ROOT / "src"), str(ROOT / "plugins")))}
     without = {"HEADRACE_NO_CACHE": "1"}
 
     def all_of(python: str | Path, environment: Mapping[str, str]) -> dict[str, Any]:
         return {name: answer(python, name, environment) for name in SCENARIOS}
 
     return Answers(
-        checkout=all_of(sys.executable, here),
+        checkout=all_of(sys.executable, CHECKOUT),
         wheel=all_of(clean.python, {}),
         wheel_without_cache=all_of(clean.python, without),
-        checkout_without_cache=all_of(sys.executable, here | without),
+        checkout_without_cache=all_of(sys.executable, CHECKOUT | without),
     )
 
 

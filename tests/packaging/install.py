@@ -13,6 +13,8 @@ from typing import Any, NamedTuple
 ROOT = Path(__file__).resolve().parents[2]
 SCENARIOS = sorted(path.relative_to(ROOT).as_posix() for path in (ROOT / "examples" / "scenarios").glob("*.toml"))
 
+CHECKOUT = {"PYTHONPATH": os.pathsep.join((str(ROOT / "src"), str(ROOT / "plugins")))}  # to run without installing it
+
 
 class Done(NamedTuple):
     """How a process ended."""

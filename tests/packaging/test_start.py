@@ -9,16 +9,16 @@ from pathlib import Path
 import pytest
 
 from headrace import benchmark
-from tests.packaging.install import SCENARIOS, must, run
+from tests.packaging.install import CHECKOUT, SCENARIOS, must, run
 
 
 def test_a_whole_command_takes_at_most_one_and_a_half_times_the_yardstick() -> None:
-    said = must([sys.executable, "-m", "headrace.benchmark", "start", SCENARIOS[0], "--runs", "5", "--at-most", "1.5"])
+    said = must([sys.executable, "-m", "headrace.benchmark", "start", SCENARIOS[0], "--runs", "5", "--at-most", "1.5"], CHECKOUT)
     assert re.search(r"[0-9.]+ ratio \(median of 5 rounds\)", said)
 
 
 def test_a_scenario_that_fails_is_not_timed(tmp_path: Path) -> None:
-    done = run([sys.executable, "-m", "headrace.benchmark", "start", tmp_path / "missing.toml", "--runs", "1"])
+    done = run([sys.executable, "-m", "headrace.benchmark", "start", tmp_path / "missing.toml", "--runs", "1"], CHECKOUT)
     assert done.code == 2
     assert "missing.toml" in done.err
 

@@ -12,11 +12,10 @@ EXAMPLE = PLUGIN / "src" / "hydroxyglutarate" / "example.toml"
 
 
 def test_it_is_listed_with_its_origin_and_hooks(beside_a_stranger: Clean) -> None:
-    listed = beside_a_stranger.headrace("plugins").out
-    (line,) = [line for line in listed.splitlines() if line.strip().startswith("hydroxyglutarate")]
-    assert "headrace-hydroxyglutarate" in line
-    assert "facts" in line
-    assert "drains" in line
+    listed = json.loads(beside_a_stranger.headrace("plugins", "--format", "json").out)["plugins"]
+    (found,) = [plugin for plugin in listed if plugin["name"] == "hydroxyglutarate"]
+    assert (found["origin"], found["hooks"]) == ("headrace-hydroxyglutarate", ["facts", "drains"])
+    assert "hydroxyglutarate" in beside_a_stranger.headrace("plugins").out
 
 
 def test_its_outlet_is_answered(beside_a_stranger: Clean) -> None:
@@ -36,6 +35,7 @@ def test_it_changes_the_version_of_the_facts_and_no_other_answer(beside_a_strang
     name = SCENARIOS[0]
     before, after = dict(answers.wheel[name]), dict(answer(beside_a_stranger.python, name, {}))
     assert before.pop("versions")["facts"] != after.pop("versions")["facts"]
+    assert after.pop("plugins") == sorted([*before.pop("plugins"), "hydroxyglutarate"])
     assert before == after
 
 
