@@ -7,7 +7,7 @@ A family differs in what one mole of its outlets is made of, so it overrides `_c
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Mapping
 from fractions import Fraction
 from typing import Any
 
@@ -131,7 +131,7 @@ def _pool(routes: RouteBook, vector: RouteVector, name: str, key: str) -> str:
     raise InputError(f"the outlet takes nothing called {name!r}", key=key, read=name, accepted=", ".join(touched))
 
 
-def named(routes: RouteBook, compound: str) -> Iterable[str]:
+def named(routes: RouteBook, compound: str) -> set[str]:
     """All names of a compound, folded for comparison."""
     entity = routes.facts.compounds[compound]
     return {slugify(text) for text in (entity.slug, entity.label, *entity.aliases)}

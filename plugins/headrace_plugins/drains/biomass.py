@@ -6,7 +6,6 @@ from fractions import Fraction
 from typing import Any
 
 from headrace.api import Case, Demand, RouteBook
-
 from headrace_plugins.drains.base import Composition, RouteDrain
 
 

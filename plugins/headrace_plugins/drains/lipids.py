@@ -10,8 +10,7 @@ import re
 from fractions import Fraction
 from typing import Any
 
-from headrace.api import Case, Demand, InputError, RouteBook, exact, nearest, shares
-
+from headrace.api import Case, Demand, InputError, RouteBook, exact, nearest, slugify
 from headrace_plugins.drains.base import Choice, Composition, RouteDrain, named, option_key
 from headrace_plugins.drains.blocks import acid_chain, acyl_chain, assemblies, parts
 
@@ -48,15 +47,19 @@ options = { chains = { "16:0" = 0.2, "18:1" = 0.6, "18:2" = 0.2 } }
     def _composition(self, case: Case, outlet: Demand, routes: RouteBook, choice: Any) -> Composition:
         if outlet.family != MIXTURES:
             if choice.chains and outlet.options.get("chains"):
-                raise InputError(f"{outlet.label} is one compound, so it has no chains to choose",
-                                 key=f"{option_key(case, outlet)}.chains", read=outlet.options["chains"])
+                raise InputError(
+                    f"{outlet.label} is one compound, so it has no chains to choose",
+                    key=f"{option_key(case, outlet)}.chains",
+                    read=outlet.options["chains"],
+                )
             return super()._composition(case, outlet, routes, choice)
         (example,) = routes.facts.outlets[outlet.outlet].draws
         chains = _stated(case, outlet, routes, choice.chains) if choice.chains else _profile(case, outlet, routes)
         drawn: dict[str, Fraction] = {}
-        for chain, share in shares(chains).items():
+        whole = sum(chains.values())
+        for chain, share in chains.items():
             for compound, count in _with_chain(case, outlet, routes, example, chain).items():
-                drawn[compound] = drawn.get(compound, Fraction(0)) + count * share
+                drawn[compound] = drawn.get(compound, Fraction(0)) + count * share / whole
         return {(compound, outlet.place): count for compound, count in sorted(drawn.items()) if count}
 
 
@@ -79,10 +82,12 @@ def _chain(routes: RouteBook, name: str, key: str) -> Chain:
         return int(match[1]), int(match[2])
     acids = {compound: chain for compound, c in routes.facts.compounds.items() if (chain := acid_chain(c))}
     for compound, chain in acids.items():
-        if name.strip().lower() in {text.replace("-", " ") for text in named(routes, compound)} | named(routes, compound):
+        if slugify(name) in named(routes, compound):
             return chain
     labels = [routes.facts.compounds[compound].label for compound in acids]
-    raise InputError(f"no fatty acid {name!r}", key=key, read=name, accepted='such as "18:1" or "oleate"', near=nearest(name, labels))
+    raise InputError(
+        f"no fatty acid {name!r}", key=key, read=name, accepted='such as "18:1" or "oleate"', near=nearest(name, labels)
+    )
 
 
 def _profile(case: Case, outlet: Demand, routes: RouteBook) -> dict[Chain, Fraction]:
@@ -104,14 +109,17 @@ def _profile(case: Case, outlet: Demand, routes: RouteBook) -> dict[Chain, Fract
 
 
 def _with_chain(case: Case, outlet: Demand, routes: RouteBook, example: str, chain: Chain) -> dict[str, Fraction]:
-    """What the example is drawn as when all its chains are this one."""
+    """What the example is drawn as when all its chains are this one.
+
+    A free acid that the facts name, and that comes from the host's own activated chain, is drawn as itself, so that its
+    thioesterase counts as a step; any other is released from its carrier here.
+    """
     compounds = routes.facts.compounds
-    if acid_chain(compounds[example]):
-        acids = [slug for slug, c in compounds.items() if acid_chain(c) == chain and routes.routes(slug)]
-        best = min(acids, key=lambda slug: _lacking(routes, slug), default=None)
-        if best is not None and _lacking(routes, best) <= 1 + _lacking(routes, _acyl(case, outlet, routes, chain)[0]):
-            return {best: Fraction(1)}
     acyl, carrier = _acyl(case, outlet, routes, chain)
+    if acid_chain(compounds[example]):
+        for acid in (slug for slug, c in compounds.items() if acid_chain(c) == chain and routes.routes(slug)):
+            if acyl in parts(routes, acid) or not _lacking(routes, acid):
+                return {acid: Fraction(1)}
     drawn: dict[str, Fraction] = {}
     for compound, count in parts(routes, example).items():
         found = acyl_chain(routes, compounds[compound])

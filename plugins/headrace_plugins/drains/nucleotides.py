@@ -10,8 +10,7 @@ from collections.abc import Mapping
 from fractions import Fraction
 from typing import Any
 
-from headrace.api import Case, Demand, InputError, RouteBook, exact, nearest, shares
-
+from headrace.api import Case, Demand, InputError, RouteBook, exact, nearest, shares, slugify
 from headrace_plugins.drains.base import Choice, Composition, RouteDrain, named, option_key
 from headrace_plugins.drains.blocks import core, parts
 
@@ -33,7 +32,7 @@ class Nucleotides(RouteDrain):
     options = ResidueChoice
     example = """
 title = "RNA on glucose"
-host = "saccharomyces-cerevisiae"
+host = "escherichia-coli"
 growth = "0.1 /h"
 [[feed]]
 substrate = "glucose"
@@ -58,12 +57,14 @@ options = { residues = { ATP = 0.27, GTP = 0.24, CTP = 0.2, UTP = 0.29 } }
         return {(name, outlet.place): count for name, count in sorted(drawn.items()) if count}
 
 
-def _stated(case: Case, outlet: Demand, routes: RouteBook, given: Mapping[str, float], residues: list[str]) -> dict[str, Fraction]:
+def _stated(
+    case: Case, outlet: Demand, routes: RouteBook, given: Mapping[str, float], residues: list[str]
+) -> dict[str, Fraction]:
     key = f"{option_key(case, outlet)}.residues"
     labels = [routes.facts.compounds[name].label for name in residues]
     found = dict.fromkeys(residues, Fraction(0))
     for text, share in given.items():
-        match = [name for name in residues if text.strip().lower() in named(routes, name)]
+        match = [name for name in residues if slugify(text) in named(routes, name)]
         if not match:
             raise InputError(f"no residue {text!r}", key=key, read=text, accepted=", ".join(labels), near=nearest(text, labels))
         if share < 0:

@@ -17,7 +17,7 @@ FIRST_PARTY: tuple[Entry, ...] = (
         name="aspartate-family",
         module="headrace_plugins.drains.aspartate_family",
         attribute="AspartateFamily",
-        summary="Aspartate, asparagine, lysine by either route, threonine, methionine, isoleucine, homoserine, ectoine and 3-aminopropanoate.",
+        summary="Aspartate, asparagine, lysine by either route, threonine, methionine, isoleucine, homoserine, ectoine, beta-alanine.",
         hooks=("drains",),
         families=("aspartate-family",),
     ),

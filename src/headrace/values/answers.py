@@ -28,6 +28,8 @@ class Draw(Struct, frozen=True):
 
     needs: net need per mole (positive = used, negative = made) of atp, nadph, nadh, quinol, co2, ammonium, oxygen, one-carbon.
     skeletons: net skeletons per mole. steps: reaction slug -> mole per mole of outlet. routes: slugs used.
+    draws: what one mole draws from the network, compound -> mole (negative: given back); the network draws this.
+    missing: steps that the case has no row for.
     """
 
     outlet: str
@@ -41,6 +43,8 @@ class Draw(Struct, frozen=True):
     origin: str
     recalled: bool = False
     readings: tuple[str, ...] = ()
+    draws: dict[str, Fraction] = {}
+    missing: tuple[str, ...] = ()
 
 
 class DrainRow(Struct, frozen=True):
