@@ -101,7 +101,7 @@ def _elsewhere(facts: Facts) -> set[tuple[str, int]]:
     routes = on_route(facts)
     ways = {"forward": (1,), "reverse": (-1,), "both": (1, -1)}
     return {(row.reaction, sign) for host in facts.hosts.values() for row in host.reactions for sign in ways[row.direction]
-            if row.reaction not in routes and not facts.reactions[row.reaction].transport
+            if row.reaction not in routes and not facts.reactions[row.reaction].transport and not facts.reactions[row.reaction].lumped
             and sign * turnover(facts, row.reaction) > 1e-9
             and any(t.count * sign > 0 and facts.compounds[t.compound].anchor for t in facts.reactions[row.reaction].terms)}
 
