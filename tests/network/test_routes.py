@@ -10,6 +10,7 @@ import pytest
 
 from headrace import case as cases
 from headrace.errors import FactsError
+from headrace.graph.boundary import own_carbon
 from headrace.network.routes import RouteBook, RouteVector
 from headrace.network.sites import Step, site_of, terms_of
 from headrace.values.case import Case
@@ -262,3 +263,9 @@ def test_a_carrier_that_the_host_lacks_is_a_fault(facts: Facts) -> None:
     with pytest.raises(FactsError, match="uses the carrier homocitrate-entry, which escherichia-coli lacks"):
         given = msgspec.structs.replace(facts, routes={**facts.routes, "x": route})
         RouteBook.of_host(given, "escherichia-coli").vector("lysine", chosen=["x"])
+
+
+def test_the_carbon_of_a_pool_is_its_own(facts: Facts) -> None:
+    """Acetyl-CoA counts two carbons and succinyl-CoA four; the coenzyme only carries them."""
+    names = ("acetyl-coa", "succinyl-coa", "palmitoyl-coa", "palmitoyl-acyl-carrier-protein", "coa", "citrate", "methionine")
+    assert [own_carbon(facts, name) for name in names] == [2, 4, 16, 16, 21, 6, 5]

@@ -36,3 +36,18 @@ class Boundary:
         named = {slug for role in FREE_ROLES for slug in facts.roles.get(role, ())}
         pools = {c.slug for c in facts.compounds.values() if c.anchor or c.precursor}
         self.free = frozenset((named | pools) - set(self.form))
+
+
+def own_carbon(facts: Facts, compound: str) -> int:
+    """Carbon atoms of a compound without those of the acyl carrier that it may sit on: 2 for acetyl-CoA, not 23.
+
+    A compound sits on a carrier when it has the carrier's nitrogen, phosphorus and sulfur, sulfur among them, and more
+    carbon than the carrier.
+    """
+    atoms = facts.compounds[compound].formula
+    for name in facts.roles.get("acyl-carrier", ()):
+        carrier = facts.compounds[name].formula
+        alike = all(atoms.get(element, 0) == carrier.get(element, 0) for element in ("N", "P", "S"))
+        if carrier.get("S") and alike and atoms.get("C", 0) > carrier["C"]:
+            return atoms["C"] - carrier["C"]
+    return atoms.get("C", 0)

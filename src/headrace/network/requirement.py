@@ -12,6 +12,7 @@ from collections.abc import Iterable, Mapping, Sequence
 import numpy as np
 from msgspec.structs import replace
 
+from headrace.graph.boundary import own_carbon
 from headrace.network import aim, repair
 from headrace.network.build import Bound, Network, programme
 from headrace.network.closure import closure, crossings, drawn, free_crossings
@@ -54,7 +55,7 @@ def drain_rows(facts: Facts, draws: Sequence[Draw], scalars: Mapping[str, float]
             continue
         net, about = taken - returned, facts.compounds[compound]
         rows.append(DrainRow(outlet, f"{about.label} ({place})", compound, place, taken, returned, shuttled, net,
-                             net * about.formula.get("C", 0), net * float(facts.contents.get(compound, 0))))
+                             net * own_carbon(facts, compound), net * float(facts.contents.get(compound, 0))))
     return tuple(sorted(rows, key=lambda r: (r.outlet, -abs(r.skeletons), -abs(r.carbon_net), r.pool)))
 
 
