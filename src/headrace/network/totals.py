@@ -19,6 +19,7 @@ from headrace.values.facts import Compound, Facts, Host
 
 Pool = tuple[str, str]
 Sums = dict[Pool, Fraction]
+Moves = list[list[tuple[Pool, Fraction]]]
 
 
 class Book(Protocol):
@@ -43,8 +44,9 @@ def totals(book: Book, rates: Mapping[Step, Fraction], amounts: Mapping[Pool, Fr
 
     free: the boundary compounds in force.
     """
-    taken, given = _gross(book, rates, amounts, free)
-    shuttled = _shuttled(book, rates, given)
+    moves = [[(pool, count * rate) for pool, count in terms_of(book.facts, book.host, step)] for step, rate in rates.items()]
+    taken, given = _gross(moves, amounts, free | set(book.boundary.form))
+    shuttled = _shuttled(book.facts, moves, given)
     pools = []
     for pool in sorted({*taken, *given}):
         compound = book.facts.compounds[pool[0]]
@@ -62,20 +64,21 @@ def totals(book: Book, rates: Mapping[Step, Fraction], amounts: Mapping[Pool, Fr
     return Totals(tuple(pools), needs(book.facts, crossings), crossings)
 
 
-def _gross(
-    book: Book, rates: Mapping[Step, Fraction], amounts: Mapping[Pool, Fraction], free: frozenset[str]
-) -> tuple[Sums, Sums]:
+def _gross(moves: Moves, amounts: Mapping[Pool, Fraction], free: frozenset[str]) -> tuple[Sums, Sums]:
     """What single steps and the draw itself take from and give to the boundary pools."""
     taken: Sums = defaultdict(Fraction)
     given: Sums = defaultdict(Fraction)
-    moved = [(pool, -count * rate) for step, rate in rates.items() for pool, count in terms_of(book.facts, book.host, step)]
-    for pool, amount in [*moved, *amounts.items()]:
-        if pool[0] in free or pool[0] in book.boundary.form:
+    for move in moves:
+        for pool, made in move:
+            if pool[0] in free:
+                (given if made > 0 else taken)[pool] += abs(made)
+    for pool, amount in amounts.items():
+        if pool[0] in free:
             (taken if amount > 0 else given)[pool] += abs(amount)
     return taken, given
 
 
-def _shuttled(book: Book, rates: Mapping[Step, Fraction], given: Sums) -> Sums:
+def _shuttled(facts: Facts, moves: Moves, given: Sums) -> Sums:
     """Per anchor pool: the lesser of what loads nitrogen carriers and what comes back.
 
     A nitrogen carrier of an anchor is a compound with more nitrogen that one step of the route makes from the anchor
@@ -83,13 +86,12 @@ def _shuttled(book: Book, rates: Mapping[Step, Fraction], given: Sums) -> Sums:
     """
     loads: dict[Pool, dict[str, Fraction]] = defaultdict(lambda: defaultdict(Fraction))
     unloads: set[tuple[Pool, str]] = set()
-    compounds = book.facts.compounds
-    for step, rate in rates.items():
-        moved = [(pool, count * rate) for pool, count in terms_of(book.facts, book.host, step)]
-        for pool, count in moved:
+    compounds = facts.compounds
+    for move in moves:
+        for pool, count in move:
             if not compounds[pool[0]].anchor:
                 continue
-            for (name, _), other in moved:
+            for (name, _), other in move:
                 if _carries_nitrogen(compounds[name], compounds[pool[0]]) and other * count < 0:
                     if count < 0:
                         loads[pool][name] -= count
