@@ -90,6 +90,31 @@ def rank(columns: Sequence[Sparse], height: int) -> int:
     return len(_echelon(columns, [ZERO] * height)[1]) if columns else 0
 
 
+def square(columns: Sequence[Sparse], rights: Sequence[Sequence[Fraction]]) -> tuple[tuple[Fraction, ...], ...] | None:
+    """Solve A x = b for a square A and each b of rights; None when A is singular.
+
+    >>> square([{0: Fraction(2)}, {0: Fraction(1), 1: Fraction(4)}], [[Fraction(5), Fraction(2)]])
+    ((Fraction(9, 4), Fraction(1, 2)),)
+    """
+    n = len(columns)
+    _check(columns, n)
+    if n == 0:
+        return tuple(() for _ in rights)
+    table, wanted = fmpq_mat(n, n), fmpq_mat(n, len(rights))
+    for j, column in enumerate(columns):
+        for row, value in column.items():
+            table[row, j] = fmpq(value.numerator, value.denominator)
+    for k, right in enumerate(rights):
+        for row, value in enumerate(right):
+            if value:
+                wanted[row, k] = fmpq(value.numerator, value.denominator)
+    try:
+        found = table.solve(wanted)
+    except ZeroDivisionError:
+        return None
+    return tuple(tuple(_fraction(found[i, k]) for i in range(n)) for k in range(len(rights)))
+
+
 def _clash(columns: Sequence[Sparse], right: Sequence[Fraction]) -> Mapping[int, Fraction]:
     """{row: weight} with y A = 0 and y b = 1, from the transposed system."""
     rows: list[dict[int, Fraction]] = [{} for _ in right]
