@@ -11,7 +11,7 @@ from headrace.pages import answers, plain
 from headrace.pages.context import LOWER_BOUND, RECALLED_CAUTION, Context
 from headrace.pages.model import Column, Notes, Page, Row, Table
 from headrace.pages.numbers import show
-from headrace.values.answers import Result
+from headrace.values.answers import RateRow, Result
 from headrace.values.case import Finding
 from tests.outputs import samples
 
@@ -107,6 +107,14 @@ def test_infeasible_names_the_pool_the_closed_refills_and_the_changes() -> None:
     assert "No, this design can't run: C4 acid (vesicle) can't be served." in shown
     assert "keep acid shunt" in shown and "sugar is fed" in shown
     assert "Requirement by group" not in shown
+
+
+def test_rates_leave_out_what_stands_still_and_say_so() -> None:
+    still = RateRow("shunt", 0.0, 0.0, 1e-7)
+    page = answers.page(samples.result("refills", samples.refills(rates=(*samples.refills().rates, still))), "", rates=True)
+    table = next(block for block in page.blocks if isinstance(block, Table) and block.name == "rates")
+    assert [row[0] for row in table.rows] == ["sugar carboxylase"]
+    assert table.note.startswith("1 reaction can't move")
 
 
 def test_findings_are_listed_once_and_stops_come_first() -> None:

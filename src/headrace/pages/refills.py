@@ -8,7 +8,7 @@ from headrace.pages.context import CARBON, RATE, Context, versions
 from headrace.pages.infeasible import repairs, shortage
 from headrace.pages.model import Block, Cell, Column, Notes, Page, Table
 from headrace.pages.notes import findings
-from headrace.pages.numbers import joined, show
+from headrace.pages.numbers import counted, joined, show
 from headrace.pages.verdicts import refills as verdict
 from headrace.values.answers import RefillAnswer, RefillRow, Result
 
@@ -185,8 +185,11 @@ def crossings(context: Context, answer: RefillAnswer) -> Table:
 def reactions(context: Context, answer: RefillAnswer) -> Table:
     """The rate of every reaction that runs or could."""
     columns = (Column("reaction"), *(Column(title, RATE, number=True) for title in ("rate", "least", "most")))
-    rows = tuple((context.name(row.reaction), row.rate, row.least, row.most) for row in answer.rates)
-    return Table("rates", "Rates of the reactions", columns, rows, empty="Nothing runs.")
+    moving = [row for row in answer.rates if max(abs(rate or 0.0) for rate in (row.rate, row.least, row.most)) > _IDLE]
+    rows = tuple((context.name(row.reaction), row.rate, row.least, row.most) for row in moving)
+    idle = len(answer.rates) - len(moving)
+    note = f"{counted(idle, 'reaction')} can't move by more than {_IDLE:g} {RATE}: --format json has all." if idle else ""
+    return Table("rates", "Rates of the reactions", columns, rows, empty="Nothing runs.", note=note)
 
 
 def aim(answer: RefillAnswer) -> tuple[Notes, ...]:
