@@ -35,6 +35,7 @@ class Desk:
     ) -> None:
         self.plugins = Manager.load(strangers=strangers) if plugins is None else plugins
         self.facts: Facts = brought.facts(self.plugins, cache=cache) if facts is None else facts
+        self._lenders = tuple(self.plugins.used)  # plugins that brought facts take part in every answer
 
     def scenario(self, question: Question) -> Scenario:
         """A scenario from a path, TOML or JSON text, plain data, or as it is."""
@@ -53,6 +54,7 @@ class Desk:
 
     def drains(self, question: Question) -> Result:
         """What each outlet and growth take, per pool and in skeletons."""
+        self._begin()
         case = self.case(question)
         draws = self.plugins.drains(case, _outlets(case), RouteBook(self.facts, case))
         rows = drain_rows(self.facts, draws, _scalars(case))
@@ -61,6 +63,7 @@ class Desk:
 
     def refills(self, question: Question, progress: Progress = lambda words: None, ranges: bool = False) -> Result:
         """The ledger, the requirement of each refill, and why closed ones are closed. ranges: of every rate, too."""
+        self._begin()
         scenario = self.scenario(question)
         case = self.case(scenario)
         progress("drains")
@@ -83,6 +86,7 @@ class Desk:
 
     def ceiling(self, question: Question, outlet: str = "", growth: float = 0.0) -> Result:
         """Largest yields of one outlet of the scenario (default: its only one). growth in 1/h."""
+        self._begin()
         case = self.case(question)
         number = cases.outlet_number(case, self.facts, outlet)
         draws = self.plugins.drains(case, case.demands, RouteBook(self.facts, case))
@@ -92,9 +96,14 @@ class Desk:
 
     def grows(self, question: Question) -> Result:
         """Whether the strain grows on the medium, and if not, what is missing."""
+        self._begin()
         case = self.case(question)
         answer = find_growth(self.facts, case)
         return self._result("grows", case, (), (), answer, case.findings + answer.findings)
+
+    def _begin(self) -> None:
+        """Forget which plugins took part in the answer before."""
+        self.plugins.used[:] = self._lenders
 
     def _result(self, kind: str, case: Case, draws: Any, rows: Any, answer: Any, findings: Any, tables: Any = ()) -> Result:
         return Result(kind, case, self.facts.version, self.facts, tuple(draws), tuple(rows), answer,

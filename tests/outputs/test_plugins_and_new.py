@@ -66,3 +66,11 @@ def test_missing_and_unknown_names_are_told(desk: Desk, names: tuple[str, str, s
 
 def test_labels_with_quotes_stay_toml(tmp_path: Path) -> None:
     assert tomllib.loads(f"a = {template._text('5' + chr(34) + ' end')}")["a"] == '5" end'
+
+
+def test_an_answer_names_only_the_plugins_of_its_own_scenario(root: Path) -> None:
+    desk, scenarios = Desk(), root / "examples" / "scenarios"
+    desk.refills(scenarios / "heme-from-glutamate.toml")
+    second = desk.refills(scenarios / "lysine-on-glucose.toml")
+    assert second.plugins == Desk().refills(scenarios / "lysine-on-glucose.toml").plugins
+    assert "porphyrins" not in second.plugins
