@@ -65,6 +65,14 @@ def test_published_amino_acid_yields(desk, capsys):
     assert len(off) <= 0.2 * len(PUBLISHED)
 
 
+# What a changed assumption explains: one named change that hits the published figure within 2 %. Histidine on glycerol,
+# leucine on glycerol and tryptophan on acetate stay unexplained (no single row or direction of the graph does it).
+@pytest.mark.parametrize("product, value", [("L-arginine", 0.51), ("L-asparagine", 1.0)])
+def test_a_carboxylating_malic_enzyme_explains_two_yields_on_glycerol(desk, product, value):
+    tables = {"energy": {"p-o-nadh": "2.0 mol/mol"}, "strain": {"add": ["malic-enzyme-nad running both ways"]}}
+    assert ceiling(desk, "escherichia-coli", product, "glycerol", **tables).open_mol_per_mol == pytest.approx(value, rel=0.02)
+
+
 def test_directions_are_those_first_compared(desk):
     assert directions(desk, "escherichia-coli") == DIRECTIONS
 
