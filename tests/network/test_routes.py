@@ -11,6 +11,7 @@ import pytest
 from headrace import case as cases
 from headrace.errors import FactsError
 from headrace.graph.boundary import own_carbon
+from headrace.network.proven import prove_routes
 from headrace.network.routes import RouteBook, RouteVector
 from headrace.network.sites import Step, site_of, terms_of
 from headrace.values.case import Case
@@ -269,3 +270,25 @@ def test_the_carbon_of_a_pool_is_its_own(facts: Facts) -> None:
     """Acetyl-CoA counts two carbons and succinyl-CoA four; the coenzyme only carries them."""
     names = ("acetyl-coa", "succinyl-coa", "palmitoyl-coa", "palmitoyl-acyl-carrier-protein", "coa", "citrate", "methionine")
     assert [own_carbon(facts, name) for name in names] == [2, 4, 16, 16, 21, 6, 5]
+
+
+def test_every_route_of_the_facts_is_solved_in_every_host_that_may_use_it(facts: Facts) -> None:
+    assert not list(prove_routes(facts))
+
+
+def test_a_route_that_is_not_solved_is_found(facts: Facts) -> None:
+    """A step too many, a step too few, and a route for a host whose compartments it does not cross."""
+    planted = {
+        "asparagine": ("asparagine-synthetase", "glutaminase"),
+        "proline": ("glutamate-kinase", "pyrroline-carboxylate-formation", "pyrroline-carboxylate-reductase"),
+    }
+    for slug, uses in planted.items():
+        wrong = msgspec.structs.replace(facts.routes[slug], uses=uses)
+        found = list(prove_routes(msgspec.structs.replace(facts, routes={**facts.routes, slug: wrong})))
+        assert slug in {fault.route for fault in found}, slug
+    everywhere = msgspec.structs.replace(facts.routes["valine"], hosts=())
+    found = list(prove_routes(msgspec.structs.replace(facts, routes={**facts.routes, "valine": everywhere})))
+    assert {(fault.route, fault.host) for fault in found} == {
+        ("valine", "saccharomyces-cerevisiae"),
+        ("valine", "yarrowia-lipolytica"),
+    }

@@ -166,7 +166,7 @@ class RouteBook:
         if not made:
             return {}, ()
         routes = self._closure({name for name, _ in made.values()}, chosen, free)
-        steps = sorted({step for route in routes for step in self._steps(route)})
+        steps = sorted({step for route in routes for step in self.steps(route)})
         rows: dict[Pool, int] = {}
         columns = [self._column(step, rows, free) for step in steps]
         right = [Fraction(0)] * len(rows)
@@ -212,7 +212,8 @@ class RouteBook:
                 waiting.extend(term.compound for term in self.facts.reactions[reaction].terms)
         return [found[name] for name in sorted(found)]
 
-    def _steps(self, route: Route) -> Iterable[Step]:
+    def steps(self, route: Route) -> Iterable[Step]:
+        """The steps of a route, at their sites. Raises FactsError for a carrier that the host lacks or a site left open."""
         for reaction in route.uses:
             for site in sites_of(self.host, self.rows.get(reaction, ()), self.facts.reactions[reaction], route):
                 yield Step(reaction, site)

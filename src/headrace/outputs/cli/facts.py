@@ -40,14 +40,14 @@ Wanted = Annotated[
 def check(format: FormatOption = Format.table) -> int:
     """Prove that the facts hold.
 
-    Shapes, balance of every element and charge, bases, rules, canonical form, nothing from nothing.
+    Shapes, balance of every element and charge, bases, rules, canonical form, nothing from nothing, one solution per route.
     """
     from headrace.graph.check import check  # this command alone pays for the shapes and rules
     from headrace.hooks.manager import Manager  # as above
     from headrace.outputs.facts import listing, proofs  # as above
 
     with working("facts"):
-        faults = check(extra=Manager.load().fact_folders(), proofs=(proofs.nothing_from_nothing,))
+        faults = check(extra=Manager.load().fact_folders(), proofs=(proofs.nothing_from_nothing, proofs.one_solution_each))
     if format is Format.json:
         _json({"faults": [msgspec.structs.asdict(fault) for fault in faults]})
     else:

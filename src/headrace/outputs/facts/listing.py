@@ -53,7 +53,10 @@ def faults(found: Sequence[Fault]) -> Page:
     columns = (Column("rule"), Column("node"), Column("what disagrees"), Column("file"))
     rows: tuple[Row, ...] = tuple((fault.rule, fault.node, fault.message, fault.file) for fault in found)
     table = Table("faults", "Faults", columns, rows, empty="None.")
-    proved = "Shapes, balance of every element and charge, bases, rules, canonical form, nothing from nothing"
+    proved = (
+        "Shapes, balance of every element and charge, bases, rules, canonical form, nothing from nothing, "
+        "one solution per route"
+    )
     verdict = f"The facts have {counted(len(rows), 'fault')}." if rows else f"The facts hold. Proved: {proved.lower()}."
     return Page("Check of the facts", (), verdict, (table,) if rows else (), table)
 

@@ -1,4 +1,4 @@
-"""Proofs about the facts that need the network: nothing from nothing, for each host with every row open.
+"""Proofs about the facts that need the network: nothing from nothing, for each host with every row open; and routes.
 
 The open state holds every row in every direction that it is listed with, so what holds there holds in each expression
 state; each is tried with and without oxygen.
@@ -10,6 +10,7 @@ from collections.abc import Iterable
 
 from headrace.graph import Fault
 from headrace.network.nothing import prove
+from headrace.network.proven import prove_routes
 from headrace.values.case import Case, Level
 from headrace.values.facts import Facts, Host
 
@@ -22,6 +23,12 @@ def nothing_from_nothing(facts: Facts) -> Iterable[Fault]:
         rows = ", ".join(leak.rows)
         message = f"{leak.probe} arise without a feed ({leak.state}), {leak.rate:.3g} mmol/gDW/h, by {rows}"
         yield Fault("nothing-from-nothing", f"host/{leak.host}", message)
+
+
+def one_solution_each(facts: Facts) -> Iterable[Fault]:
+    """A fault for each route that has no unique exact solution in a host that may use it."""
+    for open_route in prove_routes(facts):
+        yield Fault("route-not-solved", f"route/{open_route.route}", open_route.message)
 
 
 def _open(host: Host) -> Case:
