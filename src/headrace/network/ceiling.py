@@ -45,7 +45,10 @@ def ceiling(facts: Facts, expressed: Case, opened: Case, number: int, growth: fl
 
 
 def _alone(case: Case, number: int, growth: float) -> Case:
-    """The case with this outlet alone, a fixed total feed, and no maintenance unless it grows."""
+    """The case with this outlet alone, a fixed total feed, no maintenance unless it grows, and no limits on rates.
+
+    A yield has no scale, so a limit in mmol/gDW/h says nothing about it (one of zero has closed its rows already).
+    """
     shares = [f.uptake for f in case.feeds]
     total = sum(u for u in shares if u is not None)
     stated = all(u is not None for u in shares) and total > 0
@@ -53,7 +56,8 @@ def _alone(case: Case, number: int, growth: float) -> Case:
                   for f in case.feeds)
     energy = dict(case.energy) if growth > 0 else {**case.energy, "maintenance": 0.0}
     demand = msgspec.structs.replace(case.demands[number], rate=0.0, yield_per_feed=None)
-    return msgspec.structs.replace(case, demands=(demand,), growth=growth, growth_yield=None, feeds=feeds, energy=energy)
+    return msgspec.structs.replace(case, demands=(demand,), growth=growth, growth_yield=None, feeds=feeds, energy=energy,
+                                  limits=())
 
 
 def largest(net: Network, energy: bool = False, power: bool = False, inorganic: bool = True) -> float | None:
