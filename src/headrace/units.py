@@ -43,6 +43,9 @@ TABLE: dict[str, tuple[str, Fraction]] = {
     "%": ("share", Fraction(1)),
 }
 
+# Units that pint reads as something else or not at all.
+OWN: dict[str, tuple[str, Fraction]] = {"C": ("temperature", Fraction(1)), "fold": ("factor", Fraction(1))}
+
 # Units on screen and in machine files (UCUM has no unit for dry cells: the gram stands for it).
 UCUM: dict[str, str] = {
     "mmol/gDW/h": "mmol/(g.h)",
@@ -56,6 +59,8 @@ UCUM: dict[str, str] = {
     "g/L": "g/L",
     "kJ/mol": "kJ/mol",
     "%": "%",
+    "mol/L": "mol/L",
+    "mg/gDW": "mg/g",
 }
 
 Shape = tuple[tuple[str, ...], tuple[str, ...]]
@@ -118,10 +123,13 @@ CAPACITY = Kind(
 CONTENT = Kind("an amount", 'an amount per dry cells such as "1.5 mmol/gDW"', (_form("mmol/gDW", 10_000),))
 RATIO = Kind("a ratio", 'moles per mole such as "2.0 mol/mol"', (_form("mol/mol", 10, "0.01", zero=False),))
 SHARE = Kind("a share", 'a share such as "5 %"', (_form("%", 100, "1e-3"),))
+TEMPERATURE = Kind("a temperature", 'a temperature such as "30 C"', (_form("C", 120, "0.1"),))
+FACTOR = Kind("a factor", 'a factor such as "2 fold"', (_form("fold", 10, "0.1", zero=False),))
+CONCENTRATION = Kind("a concentration", 'a concentration such as "0.25 mol/L" or "1 umol/L"', (_form("mol/L", 100, "1e-12", zero=False),))
 
 _NUMBER = re.compile(r"\s*([+-]?\d{1,30}(?:\.\d{1,30})?(?:[eE][+-]?\d{1,2})?)\s*(.*?)\s*", re.DOTALL)
 _PIECE = re.compile(r"([A-Za-zµ]+|%)(\^?-1)?")
-_SIGNS = str.maketrans({"μ": "µ", "·": " ", "*": " ", "−": "-", "⁻": "-", "¹": "1"})
+_SIGNS = str.maketrans({"°": "", "μ": "µ", "·": " ", "*": " ", "−": "-", "⁻": "-", "¹": "1"})
 _LIMIT = 100
 
 
@@ -232,8 +240,8 @@ def _product(text: str) -> list[tuple[str, int]]:
 
 def _single(name: str) -> tuple[tuple[str, ...], tuple[str, ...], Fraction]:
     """Dimensions above and below, and the factor to base units, of one unit. Raises ValueError if nobody knows it."""
-    if name in TABLE:
-        dimension, factor = TABLE[name]
+    if name in TABLE or name in OWN:
+        dimension, factor = TABLE.get(name) or OWN[name]
         return (dimension,), (), factor
     return ask_pint(name)
 

@@ -24,6 +24,8 @@ Capacity = Annotated[str, Meta(description=units.CAPACITY.accepted), units.CAPAC
 Content = Annotated[str, Meta(description=units.CONTENT.accepted), units.CONTENT]
 Ratio = Annotated[str, Meta(description=units.RATIO.accepted), units.RATIO]
 Share = Annotated[str, Meta(description=units.SHARE.accepted), units.SHARE]
+Temperature = Annotated[str, Meta(description=units.TEMPERATURE.accepted), units.TEMPERATURE]
+Factor = Annotated[str, Meta(description=units.FACTOR.accepted), units.FACTOR]
 
 # A scenario is small; this bounds what a stranger's file can make the program do.
 LONGEST_LIST = 500
@@ -86,6 +88,20 @@ class Energy(Table, frozen=True):
     basal_level: Content | UnsetType = UNSET
 
 
+class Assay(Table, frozen=True):
+    """How activities in [strain] limit were measured: what makes of them what the enzyme carries in the cell.
+
+    saturation: share of the measured activity that the cell's substrate levels allow; extract-protein: share of the cell's
+    protein that the assayed extract holds; q10: factor per 10 C between assay and culture.
+    """
+
+    saturation: Share | UnsetType = UNSET
+    extract_protein: Share | UnsetType = UNSET
+    assay_temperature: Temperature | UnsetType = UNSET
+    culture_temperature: Temperature | UnsetType = UNSET
+    q10: Factor | UnsetType = UNSET
+
+
 class Aim(Table, frozen=True):
     """How the answer is chosen. slack: how far from the best; expression: as expressed, or every gene of the host."""
 
@@ -104,6 +120,7 @@ class Document(Table, frozen=True):
     strain: Strain = Strain()
     outlet: list[Outlet] = []
     energy: Energy = Energy()
+    capacity: Assay = Assay()
     aim: Aim = Aim()
     plugin: dict[str, dict[str, Any]] = {}
 

@@ -3,14 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
-from fractions import Fraction
 
 import msgspec
 from msgspec import Struct
 
-from headrace import units
+from headrace.case.assay import capacity_of
 from headrace.case.catalysts import Catalysts, Phrase
-from headrace.case.energy import known
 from headrace.case.sheet import Sheet
 from headrace.errors import InputError
 from headrace.names import slugify
@@ -87,17 +85,17 @@ def limits(
                 raise _not_here(sheet, catalysts, phrase)
             _sole_gene(phrase, meant)
             label = catalysts.label(phrase.entity) + (f" in the {_space(sheet, phrase.place)}" if phrase.place else "")
-            rate, origin = _capacity(sheet, text, oxygen)
+            capacity = capacity_of(sheet, text, oxygen)
             if label in found:
                 raise InputError(f"{label} is limited twice", read=text, accepted="each enzyme once")
-            found[label] = Limit(label, tuple(row.slug for row in meant), float(rate), origin)
+            found[label] = Limit(label, tuple(row.slug for row in meant), *capacity)
     for change in changes:
         if isinstance(change, Raise):
             if change.limit not in found:
                 raise InputError(f"no limit {change.limit!r} in this case to raise", read=change.limit)
             old = found.pop(change.limit)
             if change.rate is not None:
-                found[change.limit] = msgspec.structs.replace(old, rate=change.rate, origin="raised")
+                found[change.limit] = msgspec.structs.replace(old, rate=change.rate, origin="raised", low=None, high=None)
     return tuple(found.values())
 
 
@@ -176,21 +174,6 @@ def _only_in(rows: Iterable[HostReaction], chosen: set[str]) -> set[str]:
     for row in rows:
         (inside if row.slug in chosen else outside).update(gene for iso in row.isozymes for gene in iso.genes)
     return inside - outside
-
-
-def _capacity(sheet: Sheet, text: str, oxygen: str) -> tuple[Fraction, str]:
-    """A stated limit as a rate in mmol/gDW/h, with where it comes from."""
-    amount = units.read(text, units.CAPACITY)
-    if amount.unit == "mmol/gDW/h":
-        return amount.value, "stated in the scenario"
-    if amount.unit == "U/gDW":
-        return amount.value * Fraction(60, 1000), f"{text} stated in the scenario"
-    fraction = known(sheet, "protein-fraction", oxygen)
-    if fraction is None:
-        accepted = 'a rate such as "2.0 mmol/gDW/h", or an activity per dry cells in U/gDW'
-        raise InputError(f"no protein fraction is known for {sheet.host.label}", read=text, accepted=accepted)
-    origin = f"{text} of protein stated in the scenario, with {fraction.text} g protein per gDW"
-    return units.activity_to_rate(amount.value, fraction.value), origin
 
 
 def _sole_gene(phrase: Phrase, rows: Sequence[HostReaction]) -> None:

@@ -35,12 +35,17 @@ class Supplement(Struct, frozen=True):
 
 
 class Limit(Struct, frozen=True):
-    """The largest total rate, mmol/gDW/h, of all rows that one enzyme catalyses (either direction)."""
+    """The largest total rate, mmol/gDW/h, of all rows that one enzyme catalyses (either direction).
+
+    low, high: where what it was made from has a range (a host's protein fraction).
+    """
 
     label: str
     rows: tuple[str, ...]
     rate: float
     origin: str = "stated in the scenario"
+    low: float | None = None
+    high: float | None = None
 
 
 class Demand(Struct, frozen=True):
