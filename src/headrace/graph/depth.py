@@ -68,6 +68,7 @@ def formation(entry: Entry) -> FormationEnergy:
         charge=entry.whole(terms.CHARGE) if species else None,
         ph=None if species else entry.number(terms.PH),
         ionic_strength=None if species else entry.number(terms.IONIC_STRENGTH),
+        counted_from=entry.ref(terms.COUNTED_FROM, terms.COMPOUND_BASE, terms.COMPOUND, required=False),
     )
 
 
@@ -87,6 +88,7 @@ def concentration(entry: Entry) -> Concentration:
         low=low,
         high=high,
         feed=entry.ref(terms.FEED_ANY, terms.COMPOUND_BASE, terms.COMPOUND, required=False),
+        oxygen=entry.word(terms.OXYGEN, terms.OXYGEN_STATES, required=False),
         condition=entry.text(terms.CONDITION, required=False),
     )
 

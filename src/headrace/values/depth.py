@@ -34,7 +34,8 @@ class Constant(Struct, frozen=True):
 class FormationEnergy(Struct, frozen=True):
     """kJ/mol at 25 C, of one species at ionic strength 0 (hydrogens, charge) or of a compound at ph and ionic_strength.
 
-    ionic_strength in mol/L; hydrogens and charge are those of the species.
+    ionic_strength in mol/L; hydrogens and charge are those of the species. counted_from: the compound whose unloaded form
+    is the zero of the energy ("" = the elements).
     """
 
     slug: str
@@ -46,10 +47,14 @@ class FormationEnergy(Struct, frozen=True):
     charge: int | None = None
     ph: Fraction | None = None
     ionic_strength: Fraction | None = None
+    counted_from: str = ""
 
 
 class Concentration(Struct, frozen=True):
-    """mmol/L of a compound in a host's compartment; place "" = the whole cell. feed: the substrate it was measured on."""
+    """mmol/L of a compound in a host's compartment; place "" = the whole cell.
+
+    feed: the substrate it was measured on; oxygen: present | absent, "" where that is not recorded.
+    """
 
     slug: str
     host: str
@@ -61,6 +66,7 @@ class Concentration(Struct, frozen=True):
     low: Fraction | None = None
     high: Fraction | None = None
     feed: str = ""
+    oxygen: str = ""
     condition: str = ""
 
 
