@@ -16,6 +16,9 @@ from headrace.names import nearest, slugify
 from headrace.network.build import Network
 from headrace.network.requirement import require
 from headrace.network.routes import RouteBook, RouteVector
+from headrace.pages.csvtext import table as table_as_csv
+from headrace.pages.markdown import page as page_as_markdown
+from headrace.pages.model import Column, Notes, Page, Table
 from headrace.values.answers import (
     AddedTable,
     Answer,
@@ -50,6 +53,7 @@ __all__ = [
     "Case",
     "Change",
     "Close",
+    "Column",
     "CompartmentLedger",
     "Compound",
     "Crossing",
@@ -73,7 +77,9 @@ __all__ = [
     "Level",
     "Limit",
     "Network",
+    "Notes",
     "Outlet",
+    "Page",
     "PluginError",
     "PoolTerm",
     "Raise",
@@ -91,14 +97,17 @@ __all__ = [
     "Shortage",
     "Supplement",
     "Supply",
+    "Table",
     "TableColumn",
     "Unrule",
     "exact",
     "nearest",
     "options",
+    "page_as_markdown",
     "require",
     "shares",
     "slugify",
+    "table_as_csv",
 ]
 
 

@@ -180,6 +180,12 @@ def test_two_claimants_of_a_family_are_both_refused(strangers: str) -> None:
         loaded.drains(case(), [outlet("diamines")], routes=None)  # type: ignore[arg-type]
 
 
+def test_shipped_plugins_never_clash(strangers: str) -> None:
+    twice = [Entry(name, strangers, "Cadaverine", "Drains.", ("drains",), ("diamines",)) for name in ("one", "two")]
+    with pytest.raises(PluginError, match="plugin two: the family 'diamines' is claimed by plugin one of headrace as well"):
+        Manager(first_party=twice, trace=False)
+
+
 def test_an_outlet_without_a_claimant_is_an_error_that_names_it(strangers: str) -> None:
     loaded = manager(strangers, "Cadaverine")
     loaded.check_families([Outlet("cadaverine", "cadaverine", "diamines", {})])

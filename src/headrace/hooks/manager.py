@@ -210,7 +210,13 @@ class Manager:
     # -- loading -------------------------------------------------------------------------------------------------
 
     def _accept(self, first_party: list[Entry], others: list[Entry | None]) -> None:
-        """Enter first-party plugins, then the others unless a name or a family is taken or claimed twice."""
+        """Enter first-party plugins, then the others unless a name or a family is taken or claimed twice.
+
+        Raises PluginError when first-party plugins clash among themselves: that is a fault of this installation.
+        """
+        for number, entry in enumerate(first_party):
+            if reason := _clash(entry, first_party[:number]):
+                raise PluginError(entry.name, reason)
         self.entries = {entry.name: entry for entry in first_party}
         strangers = [entry for entry in others if entry is not None]
         accepted = []
