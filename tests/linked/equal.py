@@ -68,7 +68,8 @@ class Comparison:
     def parts(self, node: str, key: str, items: list[Mapping[str, Any]], where: str) -> None:
         """A list of objects, in order."""
         kind = PARTS.get(key, OTHER).kind
-        asked = f"SELECT ?n {{ GRAPH <{self.run}> {{ <{node}> hr:part ?n . ?n a <{kind}> ; hr:index ?i }} }} ORDER BY ?i"
+        table = "" if key in PARTS else f'; hr:table "{key}"'
+        asked = f"SELECT ?n {{ GRAPH <{self.run}> {{ <{node}> hr:part ?n . ?n a <{kind}> {table} ; hr:index ?i }} }} ORDER BY ?i"
         nodes = [row["n"]["value"] for row in self.ask(PREFIX + asked)]
         if len(nodes) != len(items):
             self.differences.append(f"{where}: JSON has {len(items)}, RDF has {len(nodes)}")

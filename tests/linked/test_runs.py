@@ -81,7 +81,10 @@ def test_provenance(facts: Facts, tmp_path: Path) -> None:
     assert row["v"]["value"] == facts.version
     assert row["program"]["value"] == headrace.__version__
     assert (row["plugin"]["value"], row["agent"]["value"]) == ("dependence", "the design group")
-    used = {each["f"]["value"] for each in ask(f"PREFIX prov: <http://www.w3.org/ns/prov#> SELECT ?f {{ <{iri}/activity> prov:used ?f }}")}
+    used = {
+        each["f"]["value"]
+        for each in ask(f"PREFIX prov: <http://www.w3.org/ns/prov#> SELECT ?f {{ <{iri}/activity> prov:used ?f }}")
+    }
     assert f"https://w3id.org/headrace/id/host/{sample.HOST}/pyruvate-carboxylase" in used
 
 
@@ -93,7 +96,9 @@ def test_nobody_is_named_unless_given(facts: Facts) -> None:
 
 def test_quantities_have_units(facts: Facts, tmp_path: Path) -> None:
     store, _ = saved(sample.refills(facts), tmp_path)
-    rows = asker(store)("""PREFIX qudt: <http://qudt.org/schema/qudt/> PREFIX hr: <https://w3id.org/headrace/ns#>
+    rows = asker(
+        store
+    )("""PREFIX qudt: <http://qudt.org/schema/qudt/> PREFIX hr: <https://w3id.org/headrace/ns#>
         SELECT ?k ?v ?u { ?case qudt:hasQuantity [ a qudt:Quantity ; hr:quantityKind ?k ; qudt:numericValue ?v ; qudt:hasUnit ?u ] }""")
     assert {(row["k"]["value"].rpartition("/")[2], float(row["v"]["value"])) for row in rows} == {
         ("maintenance", 1.9),

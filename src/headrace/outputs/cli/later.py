@@ -8,7 +8,7 @@ import typer
 
 from headrace.errors import InputError
 
-NAMES = ("compare", "sweep", "serve")
+NAMES = ("compare", "sweep")
 REFUSED = {"allow_extra_args": True, "ignore_unknown_options": True, "help_option_names": []}
 
 

@@ -8,10 +8,10 @@ from typing import Annotated
 import typer
 
 import headrace
-from headrace.outputs.cli import ceiling, drains, facts, grows, later, new, plugins, query, refills, review, seam
+from headrace.outputs.cli import ceiling, drains, facts, grows, later, new, plugins, query, refills, review, seam, serve
 from headrace.outputs.cli.terminal import emit
 
-_GROUPS = (drains, refills, ceiling, grows, review, query, facts, plugins, new, later)
+_GROUPS = (drains, refills, ceiling, grows, review, query, serve, facts, plugins, new, later)
 
 
 def _version(asked: bool) -> None:

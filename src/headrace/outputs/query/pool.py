@@ -31,9 +31,10 @@ class Worker(Struct, frozen=True):
 
 
 class Pool:
-    """workers: how many answer at once. patience: seconds that a request waits for one. Safe for threads; close it."""
+    """workers: how many answer at once. reserve: how many more are kept for our own short queries, so that pages answer
+    while strangers' queries run. patience: seconds that a request waits for one. Safe for threads; close it."""
 
-    def __init__(self, settings: wire.Settings, workers: int = 2, patience: float = 30.0) -> None:
+    def __init__(self, settings: wire.Settings, workers: int = 2, patience: float = 30.0, reserve: int = 0) -> None:
         if not hasattr(os, "fork"):
             raise MissingPartError("a system that can fork", "stopping queries at their time limit")
         self.settings, self.patience = settings, patience
@@ -41,16 +42,16 @@ class Pool:
         self._open = True
         self._nursery: subprocess.Popen[bytes] | None = None
         self._control: socket.socket | None = None
-        self._free: queue.LifoQueue[Worker | None] = queue.LifoQueue()
-        for _ in range(workers):
-            self._free.put(None)  # a worker that is still to be forked
+        self._free = _idle(workers)
+        self._reserved = _idle(reserve)
         self.replaced = 0
         self._start()
 
-    def ask(self, request: bytes, seconds: float, patience: float | None = None) -> bytes:
+    def ask(self, request: bytes, seconds: float, *, reserved: bool = False) -> bytes:
         """The reply to a request. Raises wire.LateError when it was stopped at its deadline, queue.Empty when no worker came
-        free, wire.GoneError when the worker died of it."""
-        worker = self._free.get(timeout=self.patience if patience is None else patience)
+        free, wire.GoneError when the worker died of it. reserved: by a worker that is kept for our own queries."""
+        free = self._reserved if reserved else self._free
+        worker = free.get(timeout=self.patience)
         try:
             if worker is None:
                 worker = self._fork()
@@ -58,9 +59,9 @@ class Pool:
             reply = wire.receive(worker.link, time.monotonic() + seconds)
         except BaseException:
             self._discard(worker)
-            self._free.put(None)
+            free.put(None)
             raise
-        self._free.put(worker)
+        free.put(worker)
         return reply
 
     def close(self) -> None:
@@ -113,9 +114,12 @@ class Pool:
             if self._nursery.stderr is not None:
                 self._nursery.stderr.close()
             self._nursery = None
-        with contextlib.suppress(queue.Empty):
-            while worker := self._free.get_nowait():
-                worker.link.close()
+        for free in (self._free, self._reserved):
+            with contextlib.suppress(queue.Empty):
+                while True:
+                    worker = free.get_nowait()
+                    if worker is not None:
+                        worker.link.close()
 
     def _fork(self) -> Worker:
         with self._lock:
@@ -164,17 +168,26 @@ class Pool:
                 wire.receive(self._control, time.monotonic() + _FORK)
 
 
+def _idle(workers: int) -> queue.LifoQueue[Worker | None]:
+    """Places for workers that are still to be forked."""
+    free: queue.LifoQueue[Worker | None] = queue.LifoQueue()
+    for _ in range(workers):
+        free.put(None)
+    return free
+
+
 class Queries:
     """Queries through a pool, with their limits; every outcome is a reply."""
 
     def __init__(self, pool: Pool, seconds: float = 10.0, largest: int = 50_000_000) -> None:
         self.pool, self.seconds, self.largest = pool, seconds, largest
 
-    def ask(self, request: wire.Request, patience: float | None = None) -> wire.Reply:
+    def ask(self, request: wire.Request) -> wire.Reply:
         """The reply, whatever became of the query."""
         asked = msgspec.structs.replace(request, largest=self.largest)
         try:
-            return msgspec.msgpack.decode(self.pool.ask(wire.encode(asked), self.seconds, patience), type=wire.Reply)
+            reply = self.pool.ask(wire.encode(asked), self.seconds, reserved=request.trusted)
+            return msgspec.msgpack.decode(reply, type=wire.Reply)
         except wire.LateError:
             return wire.Reply(wire.SLOW, message=f"the query was stopped after {self.seconds:g} seconds")
         except queue.Empty:

@@ -123,13 +123,13 @@ class Builder:
         """An object: a part of its own, or (names to numbers) one part for each name."""
         part = PARTS.get(key, OTHER)
         if any(isinstance(item, str | Mapping | list | tuple) for item in value.values()) or key in ("ledger",):
-            node = self.open(subject, part, f"{path}{part.name if key in PARTS else slugify(key)}")
+            node = self.open(subject, part, f"{path}{self.segment(part, key)}", key)
             self.fields(node, value)
             return
         for number, (name, item) in enumerate(value.items(), start=1):
             if item is None:
                 continue
-            node = self.open(subject, part, f"{path}{self.segment(part, key)}/{slugify(str(name)) or number}")
+            node = self.open(subject, part, f"{path}{self.segment(part, key)}/{slugify(str(name)) or number}", key)
             self.graph.add(node, terms.NAME, Literal(str(name)))
             self.plain(node, Field(terms.NUMBER), [item])
 
@@ -141,7 +141,7 @@ class Builder:
             name = slugify(str(item.get(part.key, ""))) if part.key else ""
             name = name if name and name not in used else str(number)
             used.add(name)
-            node = self.open(subject, part, f"{path}{self.segment(part, key)}/{name}")
+            node = self.open(subject, part, f"{path}{self.segment(part, key)}/{name}", key)
             self.graph.add(node, terms.INDEX, literal(number))
             if "label" not in item:
                 self.graph.add(node, facts_terms.LABEL, Literal(self.links.words(part.name, item), language="en"))
@@ -154,10 +154,12 @@ class Builder:
         """The piece of the IRI that says what kind of part it is."""
         return slugify(key) if part is OTHER else part.name
 
-    def open(self, subject: str, part: Part, path: str) -> str:
-        """A new part below a node."""
+    def open(self, subject: str, part: Part, path: str, key: str) -> str:
+        """A new part below a node. key: the JSON key that it stands under, said where the class does not tell it."""
         node = self.graph.node(path, part.kind)
         self.graph.add(subject, terms.PART, node)
+        if part is OTHER:
+            self.graph.add(node, terms.TABLE, Literal(key))
         return node
 
     def fields(self, node: str, item: Mapping[str, Any]) -> None:

@@ -19,6 +19,7 @@ PLUGIN = HR + "Plugin"
 # Properties of a run and its parts
 PART = HR + "part"
 INDEX = HR + "index"
+TABLE = HR + "table"
 QUESTION = HR + "question"
 NAME = HR + "name"
 NUMBER = HR + "number"
