@@ -140,6 +140,14 @@ class Session:
         places = [np.array([_PLACES[each] for each in part], dtype=np.int32) for part in (found.col_status, found.row_status)]
         return Basis(*places)
 
+    def ray(self) -> Floats | None:
+        """After an infeasible solve, row weights y with y A x < y s for all x within their bounds and all s within the rows'.
+
+        So the rows and columns with a weight can't hold together. None when the solver has none to give.
+        """
+        _, exists, found = self._highs.getDualRay()  # type: ignore[attr-defined]
+        return np.array(found) if exists else None
+
     def entry(self, row: int, column: int, value: float) -> None:
         """Set one coefficient of A (in the solver only: `programme` stays as it was)."""
         self._highs.changeCoeff(row, column, value)
