@@ -6,10 +6,34 @@ from headrace.hooks.entry import Entry
 
 FIRST_PARTY: tuple[Entry, ...] = (
     Entry(
+        name="capacity",
+        module="headrace_plugins.checks.capacity",
+        attribute="Capacity",
+        summary="What stated activities cover, and the enzyme that a design takes from kinetics, with what is not known.",
+        hooks=("checks",),
+        families=(),
+    ),
+    Entry(
         name="dependence",
         module="headrace_plugins.checks.dependence",
         attribute="Dependence",
         summary="Which refills, cofactors and unconfirmed facts a design can't do without.",
+        hooks=("checks",),
+        families=(),
+    ),
+    Entry(
+        name="energetics",
+        module="headrace_plugins.checks.energetics",
+        attribute="Energetics",
+        summary="Reaction energies of each refill and the steps it serves, their max-min driving force, and what would help.",
+        hooks=("checks",),
+        families=(),
+    ),
+    Entry(
+        name="regulation",
+        module="headrace_plugins.checks.regulation",
+        attribute="Regulation",
+        summary="Activators, inhibitors, vitamins and metals of the refills, and findings of the rules in graph_data/rules/findings.",
         hooks=("checks",),
         families=(),
     ),
