@@ -79,16 +79,15 @@ class InputError(HeadraceError):
 
     def at(self, *, file: str | Path = "", line: int | None = None, key: str = "") -> InputError:
         """The same error with a place filled in where it has none yet (names know no file, readers do)."""
-        return type(self)(
-            self.message,
-            file=self.file or file,
-            line=line if self.line is None else self.line,
-            key=self.key or key,
-            read=self.read,
-            accepted=self.accepted,
-            near=self.near,
-            hint=self.hint,
-        )
+        return self._placed(self.file or str(file), line if self.line is None else self.line, self.key or key)
+
+    def moved(self, key: str) -> InputError:
+        """The same error at another key (that of the file where the value really stands)."""
+        return self._placed(self.file, self.line, key)
+
+    def _placed(self, file: str, line: int | None, key: str) -> InputError:
+        given = {"read": self.read, "accepted": self.accepted, "near": self.near, "hint": self.hint}
+        return type(self)(self.message, file=file, line=line, key=key, **given)
 
 
 class FactsError(HeadraceError):

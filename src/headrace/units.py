@@ -44,7 +44,7 @@ TABLE: dict[str, tuple[str, Fraction]] = {
 }
 
 # Units that pint reads as something else or not at all.
-OWN: dict[str, tuple[str, Fraction]] = {"C": ("temperature", Fraction(1)), "fold": ("factor", Fraction(1))}
+OWN: dict[str, tuple[str, Fraction]] = {"C": ("temperature", Fraction(1)), "fold": ("factor", Fraction(1)), "kJ": ("energy", Fraction(1))}
 
 # Units on screen and in machine files (UCUM has no unit for dry cells: the gram stands for it).
 UCUM: dict[str, str] = {
@@ -57,6 +57,10 @@ UCUM: dict[str, str] = {
     "gDW/mmol": "g/mmol",
     "U/mg": "U/mg",
     "g/L": "g/L",
+    "gDW/L": "g/L",
+    "mmol/L": "mmol/L",
+    "mmol/L/h": "mmol/(L.h)",
+    "h": "h",
     "kJ/mol": "kJ/mol",
     "%": "%",
     "mol/L": "mol/L",
@@ -122,10 +126,18 @@ CAPACITY = Kind(
 )
 CONTENT = Kind("an amount", 'an amount per dry cells such as "1.5 mmol/gDW"', (_form("mmol/gDW", 10_000),))
 RATIO = Kind("a ratio", 'moles per mole such as "2.0 mol/mol"', (_form("mol/mol", 10, "0.01", zero=False),))
+OF_KNOWN = Kind("a share of the known amount", 'a share of the known amount such as "90 %"', (_form("%", 1000),))
+GROWTH_RATE = Kind("a growth rate", 'a growth rate such as "0.15 /h"', (_form("1/h", 20),))
+GROWTH_ERROR = Kind("an error", 'a standard error such as "0.01 /h" or "5 %"', (_form("1/h", 20), _form("%", 1000)))
+RATE_ERROR = Kind("an error", 'a standard error such as "0.3 mmol/gDW/h" or "5 %"', (*_RATE, _form("%", 1000)))
+DURATION = Kind("a duration", 'a duration such as "12 h"', (_form("h", 10_000, "1e-3", zero=False),))
 SHARE = Kind("a share", 'a share such as "5 %"', (_form("%", 100, "1e-3"),))
 TEMPERATURE = Kind("a temperature", 'a temperature such as "30 C"', (_form("C", 120, "0.1"),))
 FACTOR = Kind("a factor", 'a factor such as "2 fold"', (_form("fold", 10, "0.1", zero=False),))
+ENERGY = Kind("an energy", 'an energy such as "1 kJ/mol"', (_form("kJ/mol", 10_000),))
 CONCENTRATION = Kind("a concentration", 'a concentration such as "0.25 mol/L" or "1 umol/L"', (_form("mol/L", 100, "1e-12", zero=False),))
+
+NAMED: dict[str, Kind] = {"share": SHARE, "factor": FACTOR, "concentration": CONCENTRATION, "energy": ENERGY, "rate": MOLAR_RATE}
 
 _NUMBER = re.compile(r"\s*([+-]?\d{1,30}(?:\.\d{1,30})?(?:[eE][+-]?\d{1,2})?)\s*(.*?)\s*", re.DOTALL)
 _PIECE = re.compile(r"([A-Za-zµ]+|%)(\^?-1)?")
@@ -160,6 +172,20 @@ def read(text: object, kind: Kind) -> Amount:
         if shape == form_shape:
             return Amount(_within(number * factor / form_factor, form, text, kind), form.unit)
     raise InputError(f"{unit!r} is not a unit of {kind.name}", read=text, accepted=kind.accepted)
+
+
+def quantity(text: object, what: str, key: str = "") -> Fraction:
+    """A number with a unit, for options of plugins. what: share (in %), factor, concentration (mol/L), energy (kJ/mol), rate.
+
+    Raises InputError with the key of the scenario for anything else than such a quantity.
+
+    >>> float(quantity("250 mmol/L", "concentration"))
+    0.25
+    """
+    try:
+        return read(text, NAMED[what]).value
+    except InputError as error:
+        raise error.at(key=key) from None
 
 
 def activity_to_rate(activity: Fraction, protein_fraction: Fraction) -> Fraction:

@@ -5,6 +5,8 @@ place                the file and line of an error that only knows its key
 resolve              names, edits, expression levels and amounts against the facts
 levels               the expression levels of rows under conditions
 schema               the JSON Schema of a scenario
+parent, phases       the scenarios within a scenario: the strain that exists, the phases of a plan
+apply                sampled values put into a case
 outlet_number        which of a case's outlets a name means
 biomass              growth, as an outlet for drain plugins
 """
@@ -13,6 +15,22 @@ from headrace.case.document import from_dict, place, read
 from headrace.case.levels import Conditions, holds, levels
 from headrace.case.model import schema
 from headrace.case.outlets import biomass, outlet_number
+from headrace.case.parts import parent, phases
 from headrace.case.resolve import resolve
+from headrace.case.sampled import apply
 
-__all__ = ["Conditions", "biomass", "from_dict", "holds", "levels", "outlet_number", "place", "read", "resolve", "schema"]
+__all__ = [
+    "Conditions",
+    "apply",
+    "biomass",
+    "from_dict",
+    "holds",
+    "levels",
+    "outlet_number",
+    "parent",
+    "phases",
+    "place",
+    "read",
+    "resolve",
+    "schema",
+]

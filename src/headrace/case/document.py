@@ -62,12 +62,24 @@ def from_dict(raw: Mapping[str, Any], name: str = "") -> Scenario:
     return Scenario(title=data.get("title") or "", path=name, raw=data)
 
 
-def place(error: InputError, file: str, places: Mapping[str, int]) -> InputError:
-    """The error with its file, and the line of its key (or of the table that lacks the key)."""
+def place(
+    error: InputError, file: str, places: Mapping[str, int], inside: Mapping[str, str] | None = None
+) -> InputError:
+    """The error with its file, and the line of its key (or of the table that lacks the key).
+
+    inside: of a scenario that is part of another, the keys that stand elsewhere there; the message gets that place.
+    """
     key = error.key
     while key and key not in places:
         key = key[: max(key.rfind("."), key.rfind("["), 0)]
+    moved = max((own for own in inside or () if _below(error.key, own)), key=len, default="")
+    if moved and inside:
+        error = error.moved(inside[moved] + error.key[len(moved) :])
     return error.at(file=file, line=places.get(key))
+
+
+def _below(key: str, top: str) -> bool:
+    return key == top or key.startswith((f"{top}.", f"{top}["))
 
 
 def _load(path: Path) -> str:

@@ -26,6 +26,10 @@ Ratio = Annotated[str, Meta(description=units.RATIO.accepted), units.RATIO]
 Share = Annotated[str, Meta(description=units.SHARE.accepted), units.SHARE]
 Temperature = Annotated[str, Meta(description=units.TEMPERATURE.accepted), units.TEMPERATURE]
 Factor = Annotated[str, Meta(description=units.FACTOR.accepted), units.FACTOR]
+GrowthRate = Annotated[str, Meta(description=units.GROWTH_RATE.accepted), units.GROWTH_RATE]
+GrowthError = Annotated[str, Meta(description=units.GROWTH_ERROR.accepted), units.GROWTH_ERROR]
+RateError = Annotated[str, Meta(description=units.RATE_ERROR.accepted), units.RATE_ERROR]
+Duration = Annotated[str, Meta(description=units.DURATION.accepted), units.DURATION]
 
 # A scenario is small; this bounds what a stranger's file can make the program do.
 LONGEST_LIST = 500
@@ -109,6 +113,98 @@ class Aim(Table, frozen=True):
     expression: Literal["as expressed", "open"] = "as expressed"
 
 
+class Range(Table, frozen=True):
+    """An uncertain quantity: low and high, or sd around the stated value; in the unit that the quantity itself takes.
+
+    low and high are the ends of a uniform or triangular distribution (peak: the stated value), and the 5 % and 95 % points of
+    a normal or lognormal one. Nothing is drawn below 0.
+    """
+
+    low: Name | UnsetType = UNSET
+    high: Name | UnsetType = UNSET
+    sd: Name | UnsetType = UNSET
+    distribution: Literal["uniform", "triangular", "normal", "lognormal"] | UnsetType = UNSET
+
+
+Spread = list[Name] | Range
+
+
+class Uncertainty(Table, frozen=True):
+    """What is not known exactly: [low, high], or a table. facts: whether facts with a range of their own vary as well.
+
+    feed, supplement, outlet: by name of the compound or product; limit: by its key in [strain]; split: by enzyme, its measured
+    share of a group; composition: by biomass fraction, in % of the known amount.
+    """
+
+    growth: Spread | UnsetType = UNSET
+    oxygen_rate: Spread | UnsetType = UNSET
+    maintenance: Spread | UnsetType = UNSET
+    growth_associated_atp: Spread | UnsetType = UNSET
+    basal_level: Spread | UnsetType = UNSET
+    p_o_nadh: Spread | UnsetType = UNSET
+    feed: dict[str, Spread] = {}
+    supplement: dict[str, Spread] = {}
+    outlet: dict[str, Spread] = {}
+    limit: dict[str, Spread] = {}
+    split: dict[str, Spread] = {}
+    composition: dict[str, Spread] = {}
+    facts: Literal["ranges", "values"] = "ranges"
+
+
+class GrowthReading(Table, frozen=True):
+    """A measured growth rate with its standard error."""
+
+    rate: GrowthRate
+    error: GrowthError
+
+
+class RateReading(Table, frozen=True):
+    """A measured rate with its standard error."""
+
+    rate: Rate
+    error: RateError
+
+
+class Measured(Table, frozen=True):
+    """Rates measured on the strain that exists, by compound: what it takes up and what it releases."""
+
+    growth: GrowthReading | UnsetType = UNSET
+    uptake: dict[str, RateReading] = {}
+    release: dict[str, RateReading] = {}
+
+
+class Parent(Table, frozen=True):
+    """The strain that exists: a file of its own, or what differs from the scenario.
+
+    growth, feed, conditions and energy are the scenario's unless stated; strain and outlets are none unless stated.
+    """
+
+    file: Name | UnsetType = UNSET
+    growth: Growth | UnsetType = UNSET
+    feed: list[Feed] | UnsetType = UNSET
+    conditions: Conditions | UnsetType = UNSET
+    strain: Strain | UnsetType = UNSET
+    outlet: list[Outlet] | UnsetType = UNSET
+    energy: Energy | UnsetType = UNSET
+
+
+class Phase(Table, frozen=True):
+    """One phase of a plan: what differs from the scenario. biomass: dry cells per litre at its start.
+
+    feed and outlet replace the scenario's lists; conditions, strain and energy replace single keys.
+    """
+
+    duration: Duration
+    name: Name | UnsetType = UNSET
+    biomass: CellDensity | UnsetType = UNSET
+    growth: Growth | UnsetType = UNSET
+    feed: list[Feed] | UnsetType = UNSET
+    conditions: Conditions | UnsetType = UNSET
+    strain: Strain | UnsetType = UNSET
+    outlet: list[Outlet] | UnsetType = UNSET
+    energy: Energy | UnsetType = UNSET
+
+
 class Document(Table, frozen=True):
     """A whole scenario file."""
 
@@ -122,12 +218,16 @@ class Document(Table, frozen=True):
     energy: Energy = Energy()
     capacity: Assay = Assay()
     aim: Aim = Aim()
+    uncertainty: Uncertainty = Uncertainty()
+    measured: Measured | UnsetType = UNSET
+    parent: Parent | UnsetType = UNSET
+    phase: list[Phase] = []
     plugin: dict[str, dict[str, Any]] = {}
 
 
 # Keys that are planned: they are refused by name, never ignored.
 PLANNED: dict[str, frozenset[str]] = {
-    "": frozenset({"parent", "phase", "phases", "medium", "measured", "environment", "uncertainty", "sampling"}),
+    "": frozenset({"phases", "medium", "environment", "sampling"}),
     "conditions": frozenset({"medium", "temperature", "ph", "ionic-strength", "environment"}),
     "feed": frozenset({"phase", "uncertainty"}),
     "outlet": frozenset({"phase", "uncertainty"}),

@@ -11,11 +11,14 @@ from headrace import units
 from headrace.case.catalysts import Catalysts
 from headrace.case.energy import energy
 from headrace.case.levels import Conditions, is_removed, levels
+from headrace.case.measured import readings
 from headrace.case.medium import Medium, medium
 from headrace.case.model import Document
 from headrace.case.outlets import Growth, demands, growth
+from headrace.case.parts import parent, phases
 from headrace.case.sheet import Sheet
 from headrace.case.strain import Addition, Removal, additions, limits, removal
+from headrace.case.uncertain import inputs
 from headrace.errors import InputError
 from headrace.values.case import Case, Demand, Level, Limit, Scenario
 from headrace.values.changes import Change, Close, Reopen, Unrule
@@ -32,6 +35,7 @@ def resolve(scenario: Scenario, facts: Facts, *, opened: bool = False, changes: 
     """
     sheet = Sheet(scenario, msgspec.convert(scenario.raw, Document), facts)
     document = sheet.document
+    parent(scenario), phases(scenario)  # what is wrong with how they are stated is said whatever the question
     opened = opened or document.aim.expression == "open"
     around = medium(sheet, changes)
     in_force = energy(sheet, around.oxygen_state)
@@ -45,7 +49,7 @@ def resolve(scenario: Scenario, facts: Facts, *, opened: bool = False, changes: 
     asked, grown = demands(sheet, around, rows.values(), changes), growth(sheet, around, changes)
     _absolute(sheet, around, asked, grown)
     _borrowed(sheet)
-    return Case(
+    case = Case(
         title=scenario.title,
         host=sheet.host.slug,
         feeds=around.feeds,
@@ -72,7 +76,9 @@ def resolve(scenario: Scenario, facts: Facts, *, opened: bool = False, changes: 
         findings=tuple(dict.fromkeys(sheet.findings)),
         source_text=scenario.text,
         path=scenario.path,
+        measured=() if document.parent is not UNSET else readings(sheet),
     )
+    return msgspec.structs.replace(case, uncertain=inputs(sheet, case))
 
 
 def _levels(

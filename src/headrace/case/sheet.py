@@ -32,7 +32,8 @@ class Sheet:
         try:
             yield
         except InputError as error:
-            raise place(error.at(key=key), self.scenario.path, self.scenario.places) from None
+            own = self.scenario
+            raise place(error.at(key=key), own.path, own.places, own.inside) from None
 
     @cached_property
     def compounds(self) -> NameIndex:

@@ -11,6 +11,8 @@ from typing import Any
 from msgspec import Struct
 
 from headrace.values.facts import HostReaction
+from headrace.values.measured import Reading
+from headrace.values.uncertainty import Input
 
 
 class Place(Struct, frozen=True):
@@ -93,6 +95,7 @@ class Scenario(Struct, frozen=True):
     """A scenario after its keys and units are checked, before names meet the facts. Slugs are resolved later.
 
     raw: the user's document as plain data. places: key path -> line. text: the document as written ("" from Python).
+    inside: of a scenario that is part of another (a phase, the parental strain), top key -> where it stands there.
     """
 
     title: str
@@ -100,6 +103,7 @@ class Scenario(Struct, frozen=True):
     raw: dict[str, Any]
     places: dict[str, int] = {}
     text: str = ""
+    inside: dict[str, str] = {}
 
 
 class Case(Struct, frozen=True):
@@ -111,7 +115,8 @@ class Case(Struct, frozen=True):
     opened: True when every row of the host is used whatever its expression ("open").
     energy: quantities in force by kind: maintenance (mmol ATP/gDW/h), growth-associated-atp (mmol ATP/gDW),
     basal-level (mmol/gDW), protons-per-atp (mol/mol, only when a P/O is stated) ...
-    quantities: slugs of the quantities used. slack: relative slack of the aim (0 = over its optima).
+    uncertain: what is not known exactly. measured: rates measured on this strain; fixed: crossings held at a rate, into the
+    cell positive (mmol/gDW/h). quantities: slugs of the quantities used. slack: relative slack of the aim (0 = over its optima).
     """
 
     title: str
@@ -140,3 +145,6 @@ class Case(Struct, frozen=True):
     findings: tuple[Finding, ...] = ()
     source_text: str = ""
     path: str = ""
+    uncertain: tuple[Input, ...] = ()
+    measured: tuple[Reading, ...] = ()
+    fixed: dict[str, float] = {}
