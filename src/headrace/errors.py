@@ -86,8 +86,16 @@ class InputError(HeadraceError):
         return self._placed(self.file, self.line, key)
 
     def _placed(self, file: str, line: int | None, key: str) -> InputError:
-        given = {"read": self.read, "accepted": self.accepted, "near": self.near, "hint": self.hint}
-        return type(self)(self.message, file=file, line=line, key=key, **given)
+        return type(self)(
+            self.message,
+            file=file,
+            line=line,
+            key=key,
+            read=self.read,
+            accepted=self.accepted,
+            near=self.near,
+            hint=self.hint,
+        )
 
 
 class FactsError(HeadraceError):

@@ -74,8 +74,8 @@ def ledger(net: Network, x: Mapping[int, float], scalars: Mapping[str, float], d
         column, what = net.columns[number], effect(net, number)
         if column.kind in ("enter", "leave"):
             if abs(what.made) > SMALL:
-                kind = ("right", "supplied") if column.kind == "enter" else ("left", "released")
-                rows.append(LedgerRow(*kind, label(net, column), medium, abs(what.made) * rate))
+                side, crossing = ("right", "supplied") if column.kind == "enter" else ("left", "released")
+                rows.append(LedgerRow(side, crossing, label(net, column), medium, abs(what.made) * rate))
             continue
         if abs(what.made) > SMALL:
             place = max(what.by, key=lambda k: abs(what.by[k]))
@@ -120,7 +120,7 @@ def _drained(net: Network, scalar: str, rate: float) -> list[LedgerRow]:
 
 
 def _sum(net: Network, rows: list[LedgerRow], x: Mapping[int, float], scalars: Mapping[str, float]) -> Ledger:
-    total = defaultdict(float)
+    total: dict[str, float] = defaultdict(float)
     for row in rows:
         total[row.kind] += row.skeletons
     residual = total["drained"] + total["released"] + total["removed"] - total["refilled"] - total["supplied"]

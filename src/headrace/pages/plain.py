@@ -159,7 +159,7 @@ def _widths(columns: Sequence[Column], heads: list[list[str]], texts: list[list[
 def _fold(lines: Sequence[str], width: int) -> list[str]:
     """Lines of at most `width` where words allow; a dagger stays with its word."""
     pieces = [piece for line in lines for piece in (wrap(line.replace(*_TIED), width) if len(line) > width else [line])]
-    return [piece.replace(*reversed(_TIED)) for piece in pieces] or [""]
+    return [piece.replace(_TIED[1], _TIED[0]) for piece in pieces] or [""]
 
 
 def _line(
