@@ -51,7 +51,7 @@ class Programme:
     def times(self, x: Floats) -> Floats:
         """A x, one value per row."""
         columns = np.repeat(np.arange(len(self.col_lower)), np.diff(self.starts))
-        return np.bincount(self.rows, weights=self.values * x[columns], minlength=len(self.row_lower))
+        return np.bincount(self.rows, weights=self.values * x[columns], minlength=len(self.row_lower)).astype(np.float64)
 
     def residual(self, x: Floats) -> float:
         """The largest violation of a row or column bound by x (absolute, in the rows' own unit)."""
