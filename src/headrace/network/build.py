@@ -235,13 +235,9 @@ class _Maker:
         return Network(self.facts, host, self.case, tuple(self.index), tuple(self.columns), tuple(map(_rounded, self.entries)),
                        np.array([INFINITY if v is None else float(v) for v in self.upper]),
                        np.array([-INFINITY if v is None else float(v) for v in self.lower]), frozenset(free),
-                       {scalar: _rounded(draws) for scalar, draws in self.demands.items()}, self._rounded_bounds(),
+                       {scalar: _rounded(draws) for scalar, draws in self.demands.items()},
+                       tuple(b.rounded(label) for label, b in zip(self.labels, self.bounds, strict=True)),
                        {scalar: float(rate) for scalar, rate in rates.items()}, tuple(coupled), exact, dict(self.index))
-
-    def _rounded_bounds(self) -> tuple[Bound, ...]:
-        return tuple(Bound(label, _rounded(b.coefficients), {k: float(v) for k, v in b.scalars.items()},
-                           -INFINITY if b.lower is None else float(b.lower), INFINITY if b.upper is None else float(b.upper))
-                     for label, b in zip(self.labels, self.bounds, strict=True))
 
 
 def _rounded(entry: Mapping[int, Fraction]) -> dict[int, float]:

@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from fractions import Fraction
 
 import numpy as np
 
-from headrace.solve.linear import Floats
+from headrace.solve.linear import INFINITY, Floats
 from headrace.values.case import Case
 from headrace.values.facts import Facts, Host
 
@@ -43,6 +43,12 @@ class ExactBound:
     scalars: dict[str, Fraction]
     lower: Fraction | None
     upper: Fraction | None
+
+    def rounded(self, label: str) -> Bound:
+        """The same in floats."""
+        return Bound(label, {j: float(v) for j, v in self.coefficients.items()}, {k: float(v) for k, v in self.scalars.items()},
+                     -INFINITY if self.lower is None else float(self.lower),
+                     INFINITY if self.upper is None else float(self.upper))
 
 
 @dataclass(frozen=True)
@@ -84,6 +90,13 @@ class Network:
         """The columns that any of these rows runs in."""
         wanted = set(rows)
         return [j for j, c in enumerate(self.columns) if c.kind == "row" and c.name in wanted]
+
+    def bounded(self, extra: Iterable[tuple[str, ExactBound]]) -> Network:
+        """The network with more bounds after its own, each with its label."""
+        more = tuple(extra)
+        floats = tuple(each.rounded(label) for label, each in more)
+        exact = replace(self.exact, bounds=(*self.exact.bounds, *(each for _, each in more)))
+        return replace(self, bounds=(*self.bounds, *floats), exact=exact) if more else self
 
     def vector(self, values: Mapping[int, float]) -> Floats:
         """A dense vector over the columns."""

@@ -5,17 +5,18 @@ Requirement = forward rate of a refill, mmol/gDW/h, at the aim (nominal) and ove
 
 from __future__ import annotations
 
-import dataclasses
 from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence
+from fractions import Fraction
 
 import numpy as np
 from msgspec.structs import replace
 
 from headrace.graph.boundary import own_carbon
 from headrace.network import aim, repair
-from headrace.network.build import Bound, Network, programme
+from headrace.network.build import Network, programme
 from headrace.network.closure import closure, crossings, drawn, free_crossings
+from headrace.network.model import ExactBound
 from headrace.network.refills import (
     Refill,
     closed_refills,
@@ -25,7 +26,7 @@ from headrace.network.refills import (
     steps,
 )
 from headrace.network.skeletons import label, ledger
-from headrace.solve.linear import INFINITY, Session
+from headrace.solve.linear import INFINITY, Session, Solution
 from headrace.values.answers import (
     Draw,
     DrainRow,
@@ -61,11 +62,7 @@ def drain_rows(facts: Facts, draws: Sequence[Draw], scalars: Mapping[str, float]
 
 def require(net: Network, draws: Sequence[Draw] = ()) -> RefillAnswer:
     """Answer one case: ledger, requirements, closed refills; or the shortage and repairs when it can't be met."""
-    shared = _with_shares(net)
-    solved = aim.solve(shared)
-    if not isinstance(solved, aim.Aimed):
-        shared = net
-        solved = aim.solve(net)
+    shared, solved = in_force(net)
     if not isinstance(solved, aim.Aimed):
         return _infeasible(net, draws)
     rates = {j: solved.rate(j) for j in range(len(net.columns))}
@@ -104,9 +101,7 @@ def _by_group(law: Ledger, rows: Sequence[RefillRow], groups: Sequence[GroupRow]
 
 def rate_ranges(net: Network) -> tuple[RateRow, ...]:
     """The net rate of every row at the aim with its least and most over the optima (within the case's slack)."""
-    solved = aim.solve(_with_shares(net))
-    if not isinstance(solved, aim.Aimed):
-        solved = aim.solve(net)
+    _, solved = in_force(net)
     if not isinstance(solved, aim.Aimed):
         return ()
     found = []
@@ -166,18 +161,25 @@ def _stated_shares(net: Network, rows: Sequence[str]) -> dict[str, Quantity]:
     return stated if len(rows) > 1 and len(rows) - len(stated) <= 1 else {}
 
 
-def _with_shares(net: Network) -> Network:
-    """The network with each sourced split as a bound: (1 - share) v_row - share * (the group's other rows) = 0."""
+def in_force(net: Network) -> tuple[Network, aim.Aimed | Solution]:
+    """(the network that the answer rests on, its solution for the aim): with measured splits as bounds where they can hold.
+
+    The bound of a share: (1 - share) v_row - share * (the group's other rows) = 0.
+    """
     members: dict[str, list[Refill]] = defaultdict(list)
     for refill in open_refills(net):
         members[refill.group].append(refill)
     bounds = []
     for refills in members.values():
         for row, quantity in _stated_shares(net, sorted({r.row for r in refills})).items():
-            share = float(quantity.value)
-            weights = {r.column: 1.0 - share if r.row == row else -share for r in refills if r.column is not None}
-            bounds.append(Bound(f"measured share of {row}", weights, {}, 0.0, 0.0))
-    return dataclasses.replace(net, bounds=(*net.bounds, *bounds)) if bounds else net
+            share = quantity.value
+            weights = {r.column: 1 - share if r.row == row else -share for r in refills if r.column is not None}
+            bounds.append((f"measured share of {row}", ExactBound(weights, {}, Fraction(0), Fraction(0))))
+    shared = net.bounded(bounds)
+    solved = aim.solve(shared)
+    if isinstance(solved, aim.Aimed) or shared is net:
+        return shared, solved
+    return net, aim.solve(net)
 
 
 def _groups(net: Network, solved: aim.Aimed, opened: Iterable[Refill], shares_hold: bool) -> dict[str, tuple[GroupRow, list[Refill]]]:
