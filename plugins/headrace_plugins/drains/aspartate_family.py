@@ -9,9 +9,7 @@ class AspartateFamily(RouteDrain):
     """Succinyl-CoA that comes back as succinate and aspartate that comes back as fumarate are returned, not drained."""
 
     name = "aspartate-family"
-    summary = (
-        "Aspartate, asparagine, lysine by either route, threonine, methionine, isoleucine, homoserine, ectoine, beta-alanine."
-    )
+    summary = "Aspartate, asparagine, lysine (either route), threonine, methionine, isoleucine, homoserine, ectoine and such."
     families = ("aspartate-family",)
     example = """
 title = "lysine on glucose by the dehydrogenase branch"

@@ -41,7 +41,7 @@ FIRST_PARTY: tuple[Entry, ...] = (
         name="aspartate-family",
         module="headrace_plugins.drains.aspartate_family",
         attribute="AspartateFamily",
-        summary="Aspartate, asparagine, lysine by either route, threonine, methionine, isoleucine, homoserine, ectoine, beta-alanine.",
+        summary="Aspartate, asparagine, lysine (either route), threonine, methionine, isoleucine, homoserine, ectoine and such.",
         hooks=("drains",),
         families=("aspartate-family",),
     ),
