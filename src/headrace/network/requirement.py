@@ -246,7 +246,7 @@ def _row(net: Network, solved: aim.Aimed, refill: Refill, groups: Mapping[str, t
     reason, shares = group.split, _split(net, members, group.split.startswith("measured"))[1]
     nominal = shares[refill.slug] * (group.nominal or 0.0) if shares else (0.0 if high < 1e-9 else None)
     if nominal is None and abs(high - low) < 1e-6 * max(1.0, high):
-        nominal, reason = (low + high) / 2, "fixed by the balance"
+        nominal, reason = solved.rate(refill.column), "fixed by the balance"
     capacity = _capacity(net, [refill.row])
     base = _idle(net, refill, steps(net, refill, list(solved.x[: len(net.columns)])))
     return replace(base, least=max(low, 0.0), nominal=nominal, most=high, split=reason, capacity=capacity,
