@@ -10,6 +10,7 @@ import typer
 
 from headrace.outputs.cli import seam
 from headrace.outputs.cli.progress import working
+from headrace.outputs.cli.push import push
 from headrace.outputs.cli.shared import Format, FormatOption, desk, printed
 from headrace.outputs.cli.terminal import emit
 
@@ -128,6 +129,6 @@ def _print(pages: list[Page], format: Format) -> int:
 def register(app: typer.Typer) -> None:
     """Add the group."""
     group = typer.Typer(help="What the facts say, and whether they hold.", no_args_is_help=True, rich_markup_mode=None)
-    for command in (check, show, export, sources):
+    for command in (check, show, export, sources, push):
         group.command()(command)
     app.add_typer(group, name="facts")
