@@ -14,11 +14,18 @@ from headrace.hooks.merge import LEVELS
 from headrace.hooks.options import options
 from headrace.names import nearest, slugify
 from headrace.network.build import Network
+from headrace.network.capacity import Sized, sized
+from headrace.network.capacity import groups as sized_groups
+from headrace.network.drive import Drive, DriveStep
+from headrace.network.drive import Settings as DriveSettings
+from headrace.network.drive import drives as driving_forces
 from headrace.network.requirement import require
 from headrace.network.routes import RouteBook, RouteVector
+from headrace.network.triggers import State, fired, leans_on, state_of
 from headrace.pages.csvtext import table as table_as_csv
 from headrace.pages.markdown import page as page_as_markdown
 from headrace.pages.model import Column, Notes, Page, Table
+from headrace.units import quantity
 from headrace.values.answers import (
     AddedTable,
     Answer,
@@ -42,6 +49,7 @@ from headrace.values.answers import (
 )
 from headrace.values.case import Case, Demand, Feed, Finding, Level, Limit, Supplement
 from headrace.values.changes import Add, Change, Close, LetOut, Raise, Reopen, Scale, Supply, Unrule
+from headrace.values.depth import Concentration, Constant, Effect, RuleRow, Vitamin
 from headrace.values.facts import Compound, Facts, Host, HostReaction, Outlet, Reaction, Route
 
 __all__ = [
@@ -56,11 +64,17 @@ __all__ = [
     "Column",
     "CompartmentLedger",
     "Compound",
+    "Concentration",
+    "Constant",
     "Crossing",
     "Demand",
     "Document",
     "DrainRow",
     "Draw",
+    "Drive",
+    "DriveSettings",
+    "DriveStep",
+    "Effect",
     "Facts",
     "Feed",
     "FeedRow",
@@ -93,20 +107,31 @@ __all__ = [
     "Route",
     "RouteBook",
     "RouteVector",
+    "RuleRow",
     "Scale",
     "Shortage",
+    "Sized",
+    "State",
     "Supplement",
     "Supply",
     "Table",
     "TableColumn",
     "Unrule",
+    "Vitamin",
+    "driving_forces",
     "exact",
+    "fired",
+    "leans_on",
     "nearest",
     "options",
     "page_as_markdown",
+    "quantity",
     "require",
     "shares",
+    "sized",
+    "sized_groups",
     "slugify",
+    "state_of",
     "table_as_csv",
 ]
 

@@ -44,7 +44,11 @@ TABLE: dict[str, tuple[str, Fraction]] = {
 }
 
 # Units that pint reads as something else or not at all.
-OWN: dict[str, tuple[str, Fraction]] = {"C": ("temperature", Fraction(1)), "fold": ("factor", Fraction(1)), "kJ": ("energy", Fraction(1))}
+OWN: dict[str, tuple[str, Fraction]] = {
+    "C": ("temperature", Fraction(1)),
+    "fold": ("factor", Fraction(1)),
+    "kJ": ("energy", Fraction(1)),
+}
 
 # Units on screen and in machine files (UCUM has no unit for dry cells: the gram stands for it).
 UCUM: dict[str, str] = {
@@ -135,7 +139,11 @@ SHARE = Kind("a share", 'a share such as "5 %"', (_form("%", 100, "1e-3"),))
 TEMPERATURE = Kind("a temperature", 'a temperature such as "30 C"', (_form("C", 120, "0.1"),))
 FACTOR = Kind("a factor", 'a factor such as "2 fold"', (_form("fold", 10, "0.1", zero=False),))
 ENERGY = Kind("an energy", 'an energy such as "1 kJ/mol"', (_form("kJ/mol", 10_000),))
-CONCENTRATION = Kind("a concentration", 'a concentration such as "0.25 mol/L" or "1 umol/L"', (_form("mol/L", 100, "1e-12", zero=False),))
+CONCENTRATION = Kind(
+    "a concentration",
+    'a concentration such as "0.25 mol/L" or "1 umol/L"',
+    (_form("mol/L", 100, "1e-12", zero=False),),
+)
 
 NAMED: dict[str, Kind] = {"share": SHARE, "factor": FACTOR, "concentration": CONCENTRATION, "energy": ENERGY, "rate": MOLAR_RATE}
 

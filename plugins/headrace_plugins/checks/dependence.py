@@ -61,9 +61,6 @@ def _recalled_routes(draws: Sequence[Draw]) -> Iterator[Finding]:
 
 
 def _capacity(answer: RefillAnswer) -> Iterator[Finding]:
-    for group in answer.groups:
-        if group.cover is not None and group.cover < 1:
-            yield Finding("stop", "capacity", group.group, f"{group.label} covers only {group.cover:.2f} of what is needed")
     if answer.design_cover is not None and answer.design_cover < 1.2:
         level = "stop" if answer.design_cover < 1 else "caution"
         yield Finding(level, "capacity", "design", f"stated capacities allow {answer.design_cover:.2f} times the rates asked for")

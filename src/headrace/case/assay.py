@@ -61,7 +61,7 @@ def _in_the_cell(sheet: Sheet) -> tuple[float, str]:
     if stated.q10 is not UNSET:
         with sheet.at("capacity.q10"):
             if assay is None or culture is None:
-                raise InputError("q10 needs both temperatures", accepted="assay-temperature and culture-temperature in [capacity]")
+                raise InputError("q10 needs both temperatures", accepted="assay-temperature and culture-temperature beside it")
             factor *= float(units.read(stated.q10, units.FACTOR).value) ** ((culture - assay) / 10)
             words += f", brought from {assay:g} C to {culture:g} C at {stated.q10} per 10 C"
     elif assay is not None and culture is not None and assay != culture:

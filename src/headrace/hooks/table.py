@@ -33,7 +33,7 @@ FIRST_PARTY: tuple[Entry, ...] = (
         name="regulation",
         module="headrace_plugins.checks.regulation",
         attribute="Regulation",
-        summary="Activators, inhibitors, vitamins and metals of the refills, and findings of the rules in graph_data/rules/findings.",
+        summary="Activators, inhibitors, vitamins and metals of the refills, and what the finding rules of the facts say.",
         hooks=("checks",),
         families=(),
     ),

@@ -26,7 +26,9 @@ class Range:
     sources: tuple[str, ...] = ()
 
 
-def concentration(facts: Facts, case: Case, compound: str, place: str, usual: tuple[float, float], measured: bool = True) -> Range:
+def concentration(
+    facts: Facts, case: Case, compound: str, place: str, usual: tuple[float, float], measured: bool = True
+) -> Range:
     """The range of a compound in a compartment. usual: mol/L, for what was not measured. measured False: only that."""
     fitting = ("absent",) if case.oxygen == "anaerobic" else ("present", "")
     steady = _alike(facts, compound) and compound not in {*facts.electron_pairs, *facts.electron_pairs.values()}

@@ -14,7 +14,7 @@ from headrace.network.build import terms_of
 from headrace.network.concentrations import Range, concentration
 from headrace.network.driving import Driving, Key, Pair, max_min
 from headrace.network.energetics import Condition, Energies, ReactionEnergy
-from headrace.network.segment import Step, segment
+from headrace.network.segment import Step, row_of, segment
 from headrace.network.triggers import leans_on
 from headrace.values.answers import DrainRow, RefillAnswer, RefillRow
 from headrace.values.case import Case
@@ -67,12 +67,13 @@ class Lever:
 
 @dataclass(frozen=True)
 class Drive:
-    """The energetics of one refill. force: the max-min driving force (kJ/mol), None when no step has a known energy.
+    """The energetics of one refill, whose row is `row`. force: the max-min driving force (kJ/mol), None when no step has a known energy.
 
     worst: the row that limits it most. levers: largest gain first. conditions and ranges: what it was computed at.
     """
 
     refill: str
+    row: str
     steps: tuple[DriveStep, ...]
     force: float | None
     worst: str = ""
@@ -112,13 +113,13 @@ def condition(facts: Facts, host: str, place: str, settings: Settings) -> Condit
 def _drive(
     energies: Energies, case: Case, answer: RefillAnswer, refill: RefillRow, drains: Sequence[DrainRow], settings: Settings
 ) -> Drive:
-    facts = energies.facts
+    facts, (own, _) = energies.facts, row_of(refill, case)
     path = segment(facts, case, answer, refill, drains)
     steps = [_step(energies, case, step, settings) for step in path]
     counted = [(step, made) for step, made in zip(path, steps, strict=True) if made.counted]
     conditions = {made.place: condition(facts, case.host, made.place, settings) for _, made in counted}
     if not counted:
-        return Drive(refill.refill, tuple(steps), None, conditions=conditions)
+        return Drive(refill.refill, own, tuple(steps), None, conditions=conditions)
     counts = [_counts(energies, case, step) for step, _ in counted]
     ranges = {key: _range(energies, case, key, conditions, settings) for key in sorted({k for each in counts for k in each})}
     pairs = _pairs(facts, ranges, settings)
@@ -127,7 +128,7 @@ def _drive(
     numbers = {step.row: number for number, (step, _) in enumerate(counted)}
     shown = tuple(_solved(made, found, numbers.get(step.row)) for step, made in zip(path, steps, strict=True))
     worst = max(shown, key=lambda step: step.weight)
-    return Drive(refill.refill, shown, found.force, worst.row, _levers(facts, found), conditions, ranges)
+    return Drive(refill.refill, own, shown, found.force, worst.row, _levers(facts, found), conditions, ranges)
 
 
 def _step(energies: Energies, case: Case, step: Step, settings: Settings) -> DriveStep:

@@ -49,7 +49,10 @@ class Driving:
 
 
 def max_min(
-    energies: Sequence[float], counts: Sequence[Mapping[Key, float]], bounds: Mapping[Key, tuple[float, float]], pairs: Sequence[Pair] = ()
+    energies: Sequence[float],
+    counts: Sequence[Mapping[Key, float]],
+    bounds: Mapping[Key, tuple[float, float]],
+    pairs: Sequence[Pair] = (),
 ) -> Driving:
     """Solve for F. energies: dG0' in kJ/mol; counts: compounds per reaction (< 0 taken, without water); bounds: mol/L.
 

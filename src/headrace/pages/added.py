@@ -14,4 +14,4 @@ def added(context: Context) -> tuple[Table, ...]:
 
 def _table(table: AddedTable) -> Table:
     columns = tuple(Column(each.title, each.unit, each.number, each.detail) for each in table.columns)
-    return Table(table.key, table.title, columns, table.rows, note=table.note, empty=table.empty)
+    return Table(table.key, table.title, columns, table.rows, note=table.note, empty=table.empty, detail=table.detail)

@@ -29,7 +29,10 @@ class Column(Struct, frozen=True):
 
 
 class Table(Struct, frozen=True):
-    """name: usable in a file name. grouped: the first column heads groups of rows. empty: said when there are no rows."""
+    """name: usable in a file name. grouped: the first column heads groups of rows. empty: said when there are no rows.
+
+    detail: left out on a terminal, which names it instead.
+    """
 
     name: str
     title: str
@@ -38,6 +41,7 @@ class Table(Struct, frozen=True):
     grouped: bool = False
     empty: str = ""
     note: str = ""
+    detail: bool = False
 
 
 class Notes(Struct, frozen=True):

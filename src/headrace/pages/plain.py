@@ -27,8 +27,11 @@ def page(page: Page, width: int = 100) -> str:
     width = max(width, 40)
     lines = [page.title, *(piece for line in page.subject for piece in wrap(line, width)), ""]
     lines += [*wrap(page.verdict, width), ""]
+    hidden = [each.title for each in page.blocks if isinstance(each, Table) and each.detail]
     for each in page.blocks:
-        lines += [*block(each, width), ""]
+        lines += [*block(each, width), ""] if not isinstance(each, Table) or not each.detail else []
+    if hidden:
+        lines += wrap(f"With --format md or json also: {'; '.join(hidden)}.", width)
     for note in page.footnotes:
         lines += wrap(note, width)
     for caution in page.cautions:

@@ -270,7 +270,7 @@ class TableColumn(Struct, frozen=True):
 class AddedTable(Struct, frozen=True):
     """A table that a check adds to an answer. key: its key in JSON, unlike any other; cells are text, numbers, yes or no, None.
 
-    note: a sentence below it; empty: what is said when there are no rows.
+    note: a sentence below it; empty: what is said when there are no rows. detail: left out on a terminal.
     """
 
     key: str
@@ -279,6 +279,7 @@ class AddedTable(Struct, frozen=True):
     rows: tuple[tuple[str | float | bool | None, ...], ...]
     note: str = ""
     empty: str = ""
+    detail: bool = False
 
 
 class Result(Struct, frozen=True):
