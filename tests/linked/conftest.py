@@ -11,9 +11,12 @@ import pytest
 from headrace.outputs.query import wire
 from headrace.outputs.query.pool import Pool
 from headrace.outputs.rdf import folder, run
+from headrace.outputs.service.serve import Plan
+from headrace.outputs.service.site import Limits
 from headrace.values.facts import Facts
 
 from . import sample
+from .service import Client, served
 
 
 @pytest.fixture(scope="session")
@@ -30,3 +33,11 @@ def pool(results: Path) -> Iterator[Pool]:
     """Two workers over facts and samples."""
     with Pool(wire.Settings(results=str(results)), workers=2) as workers:
         yield workers
+
+
+@pytest.fixture(scope="session")
+def client(results: Path) -> Iterator[Client]:
+    """A service over facts and samples, with short limits."""
+    limits = Limits(seconds=2.0, result=5_000_000, request=2_000_000)
+    with served(Plan(port=0, results=results, limits=limits, workers=2, memory=500_000_000)) as here:
+        yield here

@@ -9,6 +9,7 @@ from headrace.outputs.query.formats import Format
 
 HTML = Format("html", "text/html; charset=utf-8", "html", ("application/xhtml+xml",))
 _MOST = 100
+_EXACTLY = 3
 
 
 class Range(NamedTuple):
@@ -57,13 +58,17 @@ def weight(wanted: Sequence[Range], media: str) -> float:
 
 
 def choose(accept: str, offers: Sequence[Format]) -> Format | None:
-    """The offer that the header likes most, the earlier of equals; the first without a header; None when none will do."""
+    """The offer that the header likes most, the earlier of equals; the first without a header; None when none will do.
+
+    An offer's other types count only where they are named as they are.
+    """
     wanted = ranges(accept)
     if not accept.strip():
         return offers[0]
     best, most = None, 0.0
     for offer in offers:
-        own = max(weight(wanted, media) for media in (offer.media, *offer.accepts))
+        aliases = [each.weight for each in wanted for media in offer.accepts if each.fits(media) == _EXACTLY]
+        own = max(weight(wanted, offer.media), *aliases, 0.0)
         if own > most:
             best, most = offer, own
     return best
