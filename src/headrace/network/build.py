@@ -140,14 +140,16 @@ class _Maker:
             enter[extra.compound] = (0.0, INFINITY if extra.rate is None else extra.rate)
         for feed in case.feeds:
             enter[feed.compound] = (0.0, INFINITY) if feed.uptake is None else (feed.uptake, feed.uptake)
-        leave = set(self.host.nutrients) - set(role["oxygen"]) | set(role["carbon-dioxide"]) | set(case.releases)
+        enter |= {name: (rate, rate) for name, rate in case.fixed.items() if rate >= 0}
+        out = {name: (-rate, -rate) for name, rate in case.fixed.items() if rate < 0}
+        leave = set(self.host.nutrients) - set(role["oxygen"]) | set(role["carbon-dioxide"]) | {*case.releases, *out}
         fixed = {f.compound for f in case.feeds}
         for name, (low, high) in sorted(enter.items()):
             if name in fixed or (name, medium) in self.index:
                 self.column(Column("enter", name), [((name, medium), ONE)], low, high)
         for name in sorted(leave):
             if (name, medium) in self.index:
-                self.column(Column("leave", name), [((name, medium), -ONE)])
+                self.column(Column("leave", name), [((name, medium), -ONE)], *out.get(name, (0.0, INFINITY)))
 
     def draw(self, scalar: str, pool: Pool, amount: Fraction) -> None:
         entry = self.demands.setdefault(scalar, {})

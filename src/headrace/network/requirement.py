@@ -60,11 +60,14 @@ def drain_rows(facts: Facts, draws: Sequence[Draw], scalars: Mapping[str, float]
     return tuple(sorted(rows, key=lambda r: (r.outlet, -abs(r.skeletons), -abs(r.carbon_net), r.pool)))
 
 
-def require(net: Network, draws: Sequence[Draw] = ()) -> RefillAnswer:
-    """Answer one case: ledger, requirements, closed refills; or the shortage and repairs when it can't be met."""
+def require(net: Network, draws: Sequence[Draw] = (), resolve: repair.Resolve | None = None) -> RefillAnswer:
+    """Answer one case: ledger, requirements, closed refills; or the shortage and repairs when it can't be met.
+
+    resolve: the scenario with changes, so that a repair is also verified in the case that it makes.
+    """
     shared, solved = in_force(net)
     if not isinstance(solved, aim.Aimed):
-        return _infeasible(net, draws)
+        return _infeasible(net, draws, resolve)
     rates = {j: solved.rate(j) for j in range(len(net.columns))}
     opened = open_refills(net)
     groups = _groups(net, solved, opened, shared is not net)
@@ -111,8 +114,8 @@ def rate_ranges(net: Network) -> tuple[RateRow, ...]:
     return tuple(found)
 
 
-def _infeasible(net: Network, draws: Sequence[Draw]) -> RefillAnswer:
-    shortage, repairs, words = repair.explain(net)
+def _infeasible(net: Network, draws: Sequence[Draw], resolve: repair.Resolve | None) -> RefillAnswer:
+    shortage, repairs, words = repair.explain(net, resolve)
     scalars = {**net.rates, **dict.fromkeys(net.coupled, 0.0)}
     return RefillAnswer(
         answer="infeasible", aim=aim.AIM_FREE if aim.is_free(net) else aim.AIM_FIXED,
@@ -162,10 +165,16 @@ def _stated_shares(net: Network, rows: Sequence[str]) -> dict[str, Quantity]:
 
 
 def in_force(net: Network) -> tuple[Network, aim.Aimed | Solution]:
-    """(the network that the answer rests on, its solution for the aim): with measured splits as bounds where they can hold.
+    """(the network that the answer rests on, its solution for the aim): with measured splits as bounds where they can hold."""
+    shared = with_shares(net)
+    solved = aim.solve(shared)
+    if isinstance(solved, aim.Aimed) or shared is net:
+        return shared, solved
+    return net, aim.solve(net)
 
-    The bound of a share: (1 - share) v_row - share * (the group's other rows) = 0.
-    """
+
+def with_shares(net: Network) -> Network:
+    """The network with each measured split as a bound: (1 - share) v_row - share * (the group's other rows) = 0."""
     members: dict[str, list[Refill]] = defaultdict(list)
     for refill in open_refills(net):
         members[refill.group].append(refill)
@@ -175,11 +184,7 @@ def in_force(net: Network) -> tuple[Network, aim.Aimed | Solution]:
             share = quantity.value
             weights = {r.column: 1 - share if r.row == row else -share for r in refills if r.column is not None}
             bounds.append((f"measured share of {row}", ExactBound(weights, {}, Fraction(0), Fraction(0))))
-    shared = net.bounded(bounds)
-    solved = aim.solve(shared)
-    if isinstance(solved, aim.Aimed) or shared is net:
-        return shared, solved
-    return net, aim.solve(net)
+    return net.bounded(bounds)
 
 
 def _groups(net: Network, solved: aim.Aimed, opened: Iterable[Refill], shares_hold: bool) -> dict[str, tuple[GroupRow, list[Refill]]]:
