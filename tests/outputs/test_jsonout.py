@@ -116,4 +116,4 @@ def test_an_undefined_number_is_refused_not_hidden() -> None:
 def test_infeasible_has_no_ledger_but_says_what_is_missing() -> None:
     document = written(RESULTS["infeasible"])
     assert document["answer"] == "infeasible" and document["ledger"] is None
-    assert document["shortage"] == [{"pool": "C4 acid (vesicle)", "missing": 0.25}]
+    assert document["shortage"] == [{"pool": "C4 acid (vesicle)", "missing": 0.25, "price": None}]

@@ -15,7 +15,9 @@ def shortage(context: Context, rows: tuple[Shortage, ...]) -> Table:
 
 
 def repairs(context: Context, rows: tuple[Repair, ...]) -> Table:
-    """Single changes that would open the case, with the feed that it would then need."""
-    columns = (Column("change"), Column("kind"), Column("least feed then", CARBON, number=True))
-    cells = tuple((row.change, row.kind, row.aim) for row in rows)
-    return Table("repairs", "Single changes that would open it", columns, cells, empty="No single change opens it.")
+    """Smallest changes that would open the case, with the feed that it would then need."""
+    shown = (Column("change"), Column("kind"), Column("least feed then", CARBON, number=True))
+    columns = (*shown, Column("why it is shut now", detail=True))
+    cells = tuple((row.change, row.kind, row.aim, row.reason) for row in rows)
+    title = "Smallest changes that would open it, each by itself"
+    return Table("repairs", title, columns, cells, empty="No change that the facts offer opens it.")

@@ -97,7 +97,7 @@ def test_options_choose_the_question_and_leave_tables_out() -> None:
 def test_an_infeasible_design_gets_a_review_that_says_no() -> None:
     text = documents(samples.result("refills", samples.infeasible()))["ab-1.md"].text
     assert "**No, this design can't run: C4 acid (vesicle) can't be served." in text
-    assert "## What is missing" in text and "## Single changes that would open it" in text
+    assert "## What is missing" in text and "## Smallest changes that would open it" in text
     assert "## Ledger of skeletons" not in text
 
 
