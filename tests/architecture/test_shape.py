@@ -14,10 +14,10 @@ from headrace import api
 
 ROOT = Path(__file__).resolve().parents[2]
 LONGEST_FILE = 400
-LONGEST_FUNCTION = 70
+LONGEST_FUNCTION = 60
 # Longer ones, each with the reason. The generated table of plugins is not read by people.
 LONG_FILES: dict[str, str] = {"src/headrace/hooks/table.py": "generated"}
-LONG_FUNCTIONS: dict[str, str] = {}
+LONG_FUNCTIONS: dict[str, str] = {"tests/linked/sample.py:_refill_rows": "a table of data"}
 
 
 def code() -> list[Path]:

@@ -13,8 +13,15 @@ from headrace.values.facts import Facts
 
 ROOT = Path(__file__).resolve().parents[2]
 
-# Slugs that the core may say, each with the reason. Docstrings and comments may give examples of any.
-EXCEPTIONS: dict[str, str] = {}
+# Slugs that the core may say, each with the reason. Docstrings and comments may give examples of any. What plays a role
+# ("oxygen", "proton") the core knows by the role's name, which the facts tie to a compound.
+EXCEPTIONS: dict[str, str] = {
+    "atp": "a need of a draw and a column of the answers; which compound it is, the role of adenylates says",
+    "nadh": "the key p-o-nadh of a scenario, a figure that the trade calls so",
+    "malate": "an example in the help of headrace query",
+}
+# Declarations copied from the plugin classes: what they claim and how they describe themselves.
+GENERATED = ("src/headrace/hooks/table.py",)
 
 
 def literals(path: Path) -> list[tuple[int, str]]:
@@ -35,7 +42,7 @@ def named(text: str, slugs: set[str]) -> set[str]:
 def entities(facts: Facts) -> set[str]:
     """Slugs of hosts, outlets, routes, enzymes, reactions and compounds."""
     tables = (facts.hosts, facts.outlets, facts.routes, facts.enzymes, facts.reactions, facts.compounds)
-    return {slug for table in tables for slug in table}
+    return {slug for table in tables for slug in table} - set(facts.roles)
 
 
 def test_the_core_names_no_entity(facts: Facts) -> None:
@@ -43,6 +50,7 @@ def test_the_core_names_no_entity(facts: Facts) -> None:
     found = [
         f"{path.relative_to(ROOT)}:{line}: {', '.join(sorted(names))}"
         for path in sorted((ROOT / "src").rglob("*.py"))
+        if path.relative_to(ROOT).as_posix() not in GENERATED
         for line, text in literals(path)
         if (names := named(text, slugs))
     ]
@@ -50,7 +58,8 @@ def test_the_core_names_no_entity(facts: Facts) -> None:
 
 
 def test_exceptions_are_still_needed(facts: Facts) -> None:
-    texts = [text for path in (ROOT / "src").rglob("*.py") for _, text in literals(path)]
+    files = [path for path in (ROOT / "src").rglob("*.py") if path.relative_to(ROOT).as_posix() not in GENERATED]
+    texts = [text for path in files for _, text in literals(path)]
     used = {slug for text in texts for slug in named(text, set(EXCEPTIONS))}
     assert set(EXCEPTIONS) == used & entities(facts)
 

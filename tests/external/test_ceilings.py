@@ -125,9 +125,10 @@ def test_atp_per_glucose(desk, host, oxygen, atp):
 
 
 def atp_per_glucose(desk, host, oxygen="aerobic", changes=(), **tables):
+    import numpy as np
+
     from headrace.network.build import programme
     from headrace.solve.linear import INFINITY, Session
-    import numpy as np
 
     question = {"title": "ATP", "host": host, "growth": 0, "feed": [{"substrate": "glucose", "uptake": "10 mmol/gDW/h"}],
                 "conditions": {"oxygen": oxygen}, **tables}

@@ -6,7 +6,6 @@ from fractions import Fraction
 
 import msgspec
 import pytest
-from . import world
 
 from headrace.network import aim
 from headrace.network.build import build
@@ -17,6 +16,8 @@ from headrace.network.requirement import require
 from headrace.values.answers import Draw, PoolTerm
 from headrace.values.case import Limit
 from headrace.values.facts import Term
+
+from . import world
 
 
 def rates(answer):

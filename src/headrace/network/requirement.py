@@ -28,8 +28,8 @@ from headrace.network.refills import (
 from headrace.network.skeletons import label, ledger
 from headrace.solve.linear import INFINITY, Session, Solution
 from headrace.values.answers import (
-    Draw,
     DrainRow,
+    Draw,
     FeedRow,
     GroupRow,
     Ledger,
