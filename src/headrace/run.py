@@ -71,7 +71,7 @@ class Desk:
         progress("refills")
         case = _drawing(case, draws)
         network = build(self.facts, case)
-        bench = Bench(self.facts, lambda changes: self.case(scenario, changes=changes))
+        bench = Bench(self.facts, lambda changes: _drawing(self.case(scenario, changes=changes), draws))
         merged = self.plugins.refills(case, network, draws, bench)
         progress("checks")
         answer: RefillAnswer = merged.answer

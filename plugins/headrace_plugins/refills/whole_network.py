@@ -24,4 +24,4 @@ class WholeNetwork:
     example = EXAMPLE
 
     def refills(self, case: Case, network: Network, draws: tuple[Draw, ...], bench: Bench) -> RefillAnswer:
-        return require(network, draws)
+        return require(network, draws, bench.resolve)

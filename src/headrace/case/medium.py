@@ -13,7 +13,7 @@ from headrace.case.sheet import Sheet
 from headrace.errors import InputError
 from headrace.names import Entity, Name, NameIndex
 from headrace.values.case import Feed, Supplement
-from headrace.values.changes import Change, LetOut, Supply
+from headrace.values.changes import Change, LetOut, Supply, Uptake
 from headrace.values.elements import neutral_mass
 from headrace.values.facts import Compound
 
@@ -52,7 +52,7 @@ class Medium(Struct, frozen=True):
 
 def medium(sheet: Sheet, changes: Sequence[Change] = ()) -> Medium:
     """Resolve feeds and conditions. Raises InputError with the key at fault."""
-    feeds, uptakes, masses = _feeds(sheet)
+    feeds, uptakes, masses = _feeds(sheet, changes)
     oxygen, rate = _oxygen(sheet)
     supplements = _supplements(sheet, feeds, changes)
     circumstances = _circumstances(sheet)
@@ -62,7 +62,9 @@ def medium(sheet: Sheet, changes: Sequence[Change] = ()) -> Medium:
     return Medium(feeds, uptakes, masses, oxygen, rate, supplements, releases, stated, circumstances)
 
 
-def _feeds(sheet: Sheet) -> tuple[tuple[Feed, ...], tuple[Fraction | None, ...], tuple[Fraction, ...]]:
+def _feeds(
+    sheet: Sheet, changes: Sequence[Change]
+) -> tuple[tuple[Feed, ...], tuple[Fraction | None, ...], tuple[Fraction, ...]]:
     feeds: list[Feed] = []
     uptakes: list[Fraction | None] = []
     masses: list[Fraction] = []
@@ -83,6 +85,13 @@ def _feeds(sheet: Sheet) -> tuple[tuple[Feed, ...], tuple[Fraction | None, ...],
         feeds.append(Feed(compound.slug, None if uptake is None else float(uptake)))
         uptakes.append(uptake)
         masses.append(mass)
+    for change in changes:
+        if isinstance(change, Uptake):
+            place = next((number for number, feed in enumerate(feeds) if feed.compound == change.compound), None)
+            if place is None:
+                raise InputError(f"{change.compound!r} is no feed of this case", read=change.compound)
+            feeds[place] = Feed(change.compound, change.rate)
+            uptakes[place] = None if change.rate is None else Fraction(repr(change.rate))
     return tuple(feeds), tuple(uptakes), tuple(masses)
 
 

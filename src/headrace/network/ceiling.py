@@ -65,7 +65,7 @@ def largest(net: Network, energy: bool = False, power: bool = False, inorganic: 
 
     None when even a rate of zero can't be met, infinity when nothing binds.
     """
-    extra = ([_discharge(net)] if energy else []) + (list(_electron_sources(net)) if power else [])
+    extra = ([discharge(net)] if energy else []) + (list(electron_sources(net)) if power else [])
     lp = programme(net, free={"outlet.0": {"outlet.0": 1.0}}, rates={k: v for k, v in net.rates.items() if k != "outlet.0"},
                    extra=[(e, 0.0, INFINITY) for e in extra])
     feeds = feed_columns(net)
@@ -89,13 +89,13 @@ def largest(net: Network, energy: bool = False, power: bool = False, inorganic: 
     return found.objective / FEED if found.optimal else None
 
 
-def _discharge(net: Network) -> dict[int, float]:
+def discharge(net: Network) -> dict[int, float]:
     """A column that charges ATP for nothing: the energy-releasing reaction backwards, in the cytosol."""
     release = net.facts.reactions[net.facts.roles["energy-release"][0]]
     return {net.index[(t.compound, cytosol_of(net.host))]: -float(t.count) for t in release.terms}
 
 
-def _electron_sources(net: Network) -> list[dict[int, float]]:
+def electron_sources(net: Network) -> list[dict[int, float]]:
     """Columns that reduce or oxidise each two-electron carrier for nothing, in every compartment where it is a pool."""
     found = []
     proton = net.facts.roles["proton"][0]

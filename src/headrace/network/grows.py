@@ -12,6 +12,7 @@ from headrace.network import repair
 from headrace.network.aim import feed_columns
 from headrace.network.build import Network, build, programme
 from headrace.network.refills import closed_refills, open_refills
+from headrace.network.shortage import shortage
 from headrace.solve.linear import Session, Solution
 from headrace.values.answers import GrowsAnswer
 from headrace.values.case import Case, Feed, Finding
@@ -66,7 +67,7 @@ def _no(facts: Facts, case: Case, rate: float, flips: bool, rules: tuple[str, ..
     slow = msgspec.structs.replace(_open_feeds(case), growth=LEAST_GROWTH)
     slow = msgspec.structs.replace(slow, feeds=tuple(Feed(f.compound) for f in slow.feeds))
     net = build(facts, slow)
-    short, _ = repair.shortage(net)
+    short, _ = shortage(net)
     because = [f"{s.pool} can't be served" for s in short] or ["energy: maintenance can't be met at this feed"]
     because += [f"{case.rows[r.row].label if r.row in case.rows else facts.reactions[r.reaction].label} is closed: {r.reason}"
                 for r in closed_refills(net)]

@@ -157,18 +157,30 @@ class Crossing(Struct, frozen=True):
 
 
 class Shortage(Struct, frozen=True):
-    """A pool that can't be served: missing in mmol/gDW/h."""
+    """A pool that can't be served: missing in mmol/gDW/h.
+
+    price: by how much the whole shortage (mmol C/gDW/h, see `headrace.network.shortage`) falls per mmol/gDW/h put into it.
+    """
 
     pool: str
     missing: float
+    price: float | None = None
 
 
 class Repair(Struct, frozen=True):
-    """A single change that opens an infeasible case; aim = least feed carbon of the repaired case (None if not defined)."""
+    """A smallest change that opens an infeasible case; aim = least feed carbon of the repaired case (None if not defined).
+
+    kind: reopen | express | regulator | reverse | add | raise | supplement | release | uptake | lower, or joint where
+    several are needed. parts: each of them in words, none of which can be left out. reason: why what it opens is shut.
+    refills: slugs of the refills that it opens.
+    """
 
     change: str
     kind: str
     aim: float | None
+    parts: tuple[str, ...] = ()
+    reason: str = ""
+    refills: tuple[str, ...] = ()
 
 
 class RateRow(Struct, frozen=True):

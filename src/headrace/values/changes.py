@@ -64,4 +64,11 @@ class Unrule(Struct, frozen=True, tag=True):
     rule: str
 
 
-Change = Reopen | Close | Add | Supply | LetOut | Raise | Scale | Unrule
+class Uptake(Struct, frozen=True, tag=True):
+    """Set a feed's uptake to another rate in mmol/gDW/h; None leaves it to the aim."""
+
+    compound: str
+    rate: float | None = None
+
+
+Change = Reopen | Close | Add | Supply | LetOut | Raise | Scale | Unrule | Uptake
