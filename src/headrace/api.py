@@ -48,7 +48,7 @@ from headrace.values.answers import (
     TableColumn,
 )
 from headrace.values.case import Case, Demand, Feed, Finding, Level, Limit, Supplement
-from headrace.values.changes import Add, Change, Close, LetOut, Raise, Reopen, Scale, Supply, Unrule
+from headrace.values.changes import Add, Change, Close, LetOut, Raise, Reopen, Scale, Supply, Unrule, Uptake
 from headrace.values.depth import Concentration, Constant, Effect, RuleRow, Vitamin
 from headrace.values.facts import Compound, Facts, Host, HostReaction, Outlet, Reaction, Route
 
@@ -117,6 +117,7 @@ __all__ = [
     "Table",
     "TableColumn",
     "Unrule",
+    "Uptake",
     "Vitamin",
     "driving_forces",
     "exact",
