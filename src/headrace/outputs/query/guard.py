@@ -6,7 +6,7 @@ moreover can open no file or connection while they answer one (`work`).
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from urllib.parse import urljoin, urlsplit
 
 from msgspec import Struct
@@ -46,8 +46,7 @@ def check(text: str) -> Query:
     if len(text) > LONGEST:
         raise InputError(f"the query has {len(text)} characters", accepted=f"at most {LONGEST}")
     plain = unescaped(text)
-    found = list(tokens(plain))
-    _nesting(plain, found)
+    found = list(_shallow(plain, tokens(plain)))
     start, prefixes, base = _prologue(plain, found)
     form = _form(plain, found, start)
     _words(plain, found[start:])
@@ -59,7 +58,8 @@ def _refuse(text: str, token: Token, what: str, accepted: str = "", hint: str = 
     return InputError(what, line=line(text, token.at), read=token.text[:80], accepted=accepted, hint=hint)
 
 
-def _nesting(text: str, found: Sequence[Token]) -> None:
+def _shallow(text: str, found: Iterable[Token]) -> Iterator[Token]:
+    """The tokens, up to where brackets stand too deep."""
     depth = 0
     for token in found:
         if token.kind == "sign" and token.text in _OPEN:
@@ -68,6 +68,7 @@ def _nesting(text: str, found: Sequence[Token]) -> None:
                 raise _refuse(text, token, f"nested deeper than {DEEPEST} brackets")
         elif token.kind == "sign" and token.text in _CLOSE:
             depth -= 1
+        yield token
 
 
 def _prologue(text: str, found: Sequence[Token]) -> tuple[int, dict[str, str], str]:
