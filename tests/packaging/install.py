@@ -26,7 +26,7 @@ class Done(NamedTuple):
 
 def run(command: Sequence[str | Path], environment: Mapping[str, str] | None = None) -> Done:
     """Run a command at the top of the checkout, without what this process may have put on the import path."""
-    inherited = {key: value for key, value in os.environ.items() if key not in ("PYTHONPATH", "HEADRACE_NO_CACHE")}
+    inherited = {key: value for key, value in os.environ.items() if key not in ("PYTHONPATH", "HEADRACE_NO_CACHE", "PYTEST_ADDOPTS")}
     done = subprocess.run(
         [str(part) for part in command], cwd=ROOT, env=inherited | dict(environment or {}), capture_output=True, text=True
     )
