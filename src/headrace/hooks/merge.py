@@ -148,6 +148,8 @@ def _table_fault(table: AddedTable, known: dict[str, AddedTable]) -> str:
     """What is wrong with a table; "" if nothing is. The keys of an answer itself are taken."""
     if not table.key.isidentifier() or table.key in known or table.key in TAKEN:
         return "has a key that is taken or is no plain name"
+    if table.single and len(table.rows) != 1:
+        return f"is said to have one row and has {len(table.rows)}"
     if len({column.key for column in table.columns}) < len(table.columns):
         return "has two columns of one key"
     return "" if all(len(row) == len(table.columns) for row in table.rows) else "has a row of another length than its columns"

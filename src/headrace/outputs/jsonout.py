@@ -13,7 +13,17 @@ from typing import Any
 import msgspec
 
 from headrace.pages.notes import collected
-from headrace.values.answers import AddedTable, CeilingAnswer, DrainRow, Draw, GrowsAnswer, Ledger, RefillAnswer, RefillRow, Result
+from headrace.values.answers import (
+    AddedTable,
+    CeilingAnswer,
+    DrainRow,
+    Draw,
+    GrowsAnswer,
+    Ledger,
+    RefillAnswer,
+    RefillRow,
+    Result,
+)
 
 UNITS = {
     "rate": "mmol/gDW/h",
@@ -52,10 +62,11 @@ def document(result: Result, headrace: str, rates: bool = False) -> dict[str, An
     }
 
 
-def _table(table: AddedTable) -> list[dict[str, Any]]:
-    """A table that a check adds: one object per row."""
+def _table(table: AddedTable) -> list[dict[str, Any]] | dict[str, Any]:
+    """A table that a check adds: one object per row, or the one object of a single row."""
     keys = [column.key for column in table.columns]
-    return [dict(zip(keys, row, strict=True)) for row in table.rows]
+    rows = [dict(zip(keys, row, strict=True)) for row in table.rows]
+    return rows[0] if table.single else rows
 
 
 def _table_units(table: AddedTable) -> dict[str, str]:

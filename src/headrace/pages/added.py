@@ -14,4 +14,5 @@ def added(context: Context) -> tuple[Table, ...]:
 
 def _table(table: AddedTable) -> Table:
     columns = tuple(Column(each.title, each.unit, each.number, each.detail) for each in table.columns)
-    return Table(table.key, table.title, columns, table.rows, note=table.note, empty=table.empty, detail=table.detail)
+    rows = tuple(tuple(", ".join(cell) if isinstance(cell, tuple) else cell for cell in row) for row in table.rows)
+    return Table(table.key, table.title, columns, rows, note=table.note, empty=table.empty, detail=table.detail)

@@ -280,18 +280,20 @@ class TableColumn(Struct, frozen=True):
 
 
 class AddedTable(Struct, frozen=True):
-    """A table that a check adds to an answer. key: its key in JSON, unlike any other; cells are text, numbers, yes or no, None.
+    """A table that a check adds to an answer. key: its key in JSON, unlike any other.
 
-    note: a sentence below it; empty: what is said when there are no rows. detail: left out on a terminal.
+    Cells are text, several texts, numbers, yes or no, None. note: a sentence below it; empty: what is said when there are no
+    rows. detail: left out on a terminal. single: it has one row, an object in JSON instead of a list of objects.
     """
 
     key: str
     title: str
     columns: tuple[TableColumn, ...]
-    rows: tuple[tuple[str | float | bool | None, ...], ...]
+    rows: tuple[tuple[str | tuple[str, ...] | float | bool | None, ...], ...]
     note: str = ""
     empty: str = ""
     detail: bool = False
+    single: bool = False
 
 
 class Result(Struct, frozen=True):
