@@ -82,7 +82,6 @@ def test_random_cases_close(desk, capsys):
     done = tried = 0
     seen = {"removed": 0, "released": 0, "supplied": 0, "reversed": 0, "carried": 0}
     worst = 0.0
-    books: dict[str, RouteBook] = {}
     while done < MANY:
         tried += 1
         question = scenario(rng)

@@ -159,7 +159,8 @@ def _absent(facts: Facts, case: Case, demand: Demand, best: dict[str, float | No
     if (best["expressed"] or 0) > 1e-9:
         return None
     why = "as expressed it can't be made" if (best["open"] or 0) > 1e-9 else "the host lacks a way to it"
-    pools = [f"{facts.compounds[c].label} in the {place_of(facts, facts.hosts[case.host], _row(demand), c, '')}" for c in demand.draws]
+    host, row = facts.hosts[case.host], _row(demand)
+    pools = [f"{facts.compounds[c].label} in the {place_of(facts, host, row, c, '')}" for c in demand.draws]
     return Finding("stop", "ceiling", demand.label, f"{' and '.join(pools)}: {why}; name missing enzymes under [strain] add")
 
 

@@ -38,7 +38,8 @@ class Refill:
     @property
     def group(self) -> str:
         """Which refills it can stand in for."""
-        return f"carboxylation-{self.compartment}" if self.fixed > 0 and self.from_precursor else f"{self.reaction}-{self.compartment}"
+        what = "carboxylation" if self.fixed > 0 and self.from_precursor else self.reaction
+        return f"{what}-{self.compartment}"
 
 
 def inorganic_fixed(facts: Facts, reaction: str, sign: int) -> float:
@@ -52,6 +53,11 @@ def energy_used(facts: Facts, reaction: str, sign: int) -> float:
     release = facts.reactions[facts.roles["energy-release"][0]]
     charged = {t.compound for t in release.terms if t.count < 0 and facts.compounds[t.compound].carrier}
     return -sign * sum(float(t.count) for t in facts.reactions[reaction].terms if t.compound in charged)
+
+
+def electrons_used(facts: Facts, reaction: str, sign: int) -> float:
+    """Reduced two-electron carriers taken directly by a turn in direction `sign` (mol; negative = made)."""
+    return -sign * sum(float(t.count) for t in facts.reactions[reaction].terms if t.compound in facts.electron_pairs)
 
 
 def open_refills(net: Network) -> tuple[Refill, ...]:
@@ -101,7 +107,8 @@ def _elsewhere(facts: Facts) -> set[tuple[str, int]]:
     routes = on_route(facts)
     ways = {"forward": (1,), "reverse": (-1,), "both": (1, -1)}
     return {(row.reaction, sign) for host in facts.hosts.values() for row in host.reactions for sign in ways[row.direction]
-            if row.reaction not in routes and not facts.reactions[row.reaction].transport and not facts.reactions[row.reaction].lumped
+            if row.reaction not in routes
+            and not (facts.reactions[row.reaction].transport or facts.reactions[row.reaction].lumped)
             and sign * turnover(facts, row.reaction) > 1e-9
             and any(t.count * sign > 0 and facts.compounds[t.compound].anchor for t in facts.reactions[row.reaction].terms)}
 

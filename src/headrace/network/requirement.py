@@ -187,7 +187,9 @@ def with_shares(net: Network) -> Network:
     return net.bounded(bounds)
 
 
-def _groups(net: Network, solved: aim.Aimed, opened: Iterable[Refill], shares_hold: bool) -> dict[str, tuple[GroupRow, list[Refill]]]:
+def _groups(
+    net: Network, solved: aim.Aimed, opened: Iterable[Refill], shares_hold: bool
+) -> dict[str, tuple[GroupRow, list[Refill]]]:
     members: dict[str, list[Refill]] = defaultdict(list)
     for refill in opened:
         members[refill.group].append(refill)
