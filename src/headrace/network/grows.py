@@ -49,8 +49,10 @@ def grows(facts: Facts, case: Case) -> GrowsAnswer:
         if case.energy.get("basal-level") else False
     notes = [Finding("note", "growth", f.compound, f"no uptake is stated for {facts.compounds[f.compound].label}; "
                      f"{ASSUMED_UPTAKE:g} mmol/gDW/h assumed") for f in case.feeds if f.uptake is None]
-    rules = tuple(sorted({r for level in case.levels.values() for r in level.rules}))
-    fitted = any(level.fitted and level.level != "off" for level in case.levels.values())
+    running = {c.name for j, c in enumerate(net.columns) if found.optimal and c.kind == "row" and found.x[j] > 1e-9}
+    closed = {r.row for r in closed_refills(net) if r.row in case.levels}
+    rules = tuple(sorted({r for row in (running if yes else closed) for r in case.levels[row].rules}))
+    fitted = any(case.levels[row].fitted for row in running)
     if yes:
         used = [r for r in open_refills(net) if r.column is not None and found.x[r.column] > 1e-9]
         words = tuple(f"{case.rows[r.row].label} refills" for r in used) or ("no refill is needed",)

@@ -98,7 +98,7 @@ def closed_refills(net: Network) -> tuple[Refill, ...]:
     for slug, sign in sorted(_elsewhere(facts) - {(r, s) for r in have for s in (1, -1)}):
         reason = absent.get(slug, "the host's facts do not list it")
         found.append(Refill(slug, slug, sign, cytosol, sign * turnover(facts, slug), inorganic_fixed(facts, slug, sign), None,
-                            "absent", f"absent: {reason}"))
+                            "absent", reason if reason.startswith("absent") else f"absent: {reason}"))
     return tuple(found)
 
 

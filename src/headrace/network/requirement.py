@@ -196,13 +196,19 @@ def _groups(
     found = {}
     for name, refills in sorted(members.items()):
         columns = [r.column for r in refills if r.column is not None]
-        low, high = solved.range(dict.fromkeys(columns, 1.0))
+        low, high = _clean(solved.range(dict.fromkeys(columns, 1.0)))
         nominal = sum(solved.rate(j) for j in columns)
         capacity = _capacity(net, [r.row for r in refills])
         found[name] = (GroupRow(
             name, _group_label(net, refills), tuple(sorted(r.slug for r in refills)), max(low, 0.0), nominal, high,
             capacity, _cover(capacity, nominal), aim.necessary(net, columns), _split(net, refills, shares_hold)[0]), refills)
     return found
+
+
+def _clean(ends: tuple[float, float]) -> tuple[float, float]:
+    """A range without what the optima's tolerance leaves: below 1e-6 mmol/gDW/h nothing runs."""
+    low, high = (0.0 if abs(end) < 1e-6 else end for end in ends)
+    return low, high
 
 
 def _group_label(net: Network, refills: Sequence[Refill]) -> str:
@@ -249,7 +255,7 @@ def _split(net: Network, refills: Sequence[Refill], shares_hold: bool) -> tuple[
 def _row(net: Network, solved: aim.Aimed, refill: Refill, groups: Mapping[str, tuple[GroupRow, list[Refill]]]) -> RefillRow:
     assert refill.column is not None
     group, members = groups[refill.group]
-    low, high = solved.range({refill.column: 1.0})
+    low, high = _clean(solved.range({refill.column: 1.0}))
     reason, shares = group.split, _split(net, members, group.split.startswith("measured"))[1]
     nominal = shares[refill.slug] * (group.nominal or 0.0) if shares else (0.0 if high < 1e-9 else None)
     if nominal is None and abs(high - low) < 1e-6 * max(1.0, high):
