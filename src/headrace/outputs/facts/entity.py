@@ -7,8 +7,8 @@ from collections.abc import Callable, Iterable
 import msgspec
 
 from headrace.names import Entity
+from headrace.outputs.facts import depth, words
 from headrace.outputs.facts import host as hosts
-from headrace.outputs.facts import words
 from headrace.outputs.facts.words import Book
 from headrace.pages.model import Cell, Column, Page, Table
 from headrace.pages.numbers import counted
@@ -54,7 +54,7 @@ def _compound(book: Book, slug: str) -> Page:
     skeletons = "no skeleton content is known" if content is None else f"carries {words.number(content)} skeletons per mole"
     verdict = f"{item.label}: {words.formula(item.formula)}, charge {item.charge:+d}; {skeletons}."
     used = [each for each in book.facts.reactions.values() if any(term.compound == slug for term in each.terms)]
-    return _page("compound", slug, item.label, verdict, pairs, _reactions(book, used))
+    return _page("compound", slug, item.label, verdict, pairs, _reactions(book, used), *depth.of_compound(book, slug))
 
 
 def _reactions(book: Book, reactions: Iterable[Reaction]) -> Table:
@@ -105,7 +105,7 @@ def _enzyme(book: Book, slug: str) -> Page:
     slugs = {each.slug for each in catalysed}
     rows = _rows(book, lambda row: row.reaction in slugs)
     verdict = f"{item.label} catalyses {counted(len(catalysed), 'reaction')}; {counted(len(rows.rows), 'row')} of hosts have it."
-    return _page("enzyme", slug, item.label, verdict, pairs, _reactions(book, catalysed), rows)
+    return _page("enzyme", slug, item.label, verdict, pairs, _reactions(book, catalysed), rows, *depth.of_enzyme(book, slug))
 
 
 def _outlet(book: Book, slug: str) -> Page:

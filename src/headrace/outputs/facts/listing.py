@@ -70,6 +70,9 @@ def bases(facts: Facts) -> Iterator[Basis]:
         yield host.basis
         for items in (host.reactions, host.expressions, host.quantities, host.composition, host.absences, host.releases):
             yield from (item.basis for item in items)
+    for numbers in (facts.kinetics, facts.formation, facts.concentrations, facts.effects, facts.vitamins):
+        yield from (item.basis for item in numbers)
+    yield from (basis for vitamin in facts.vitamins for basis in vitamin.supplied_basis.values())
 
 
 def _citation(facts: Facts, slug: str) -> tuple[str, str]:
