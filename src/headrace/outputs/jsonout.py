@@ -12,6 +12,7 @@ from typing import Any
 
 import msgspec
 
+from headrace.outputs.besidejson import beside
 from headrace.pages.notes import collected
 from headrace.values.answers import (
     AddedTable,
@@ -55,6 +56,7 @@ def document(result: Result, headrace: str, rates: bool = False) -> dict[str, An
         "scenario": result.case.title,
         "host": result.case.host,
         **found,
+        **beside(result),
         **{each.key: _table(each) for each in result.tables},
         "findings": [msgspec.structs.asdict(finding) for finding in collected(result)],
         "versions": {"headrace": headrace, "facts": result.facts_version},

@@ -35,11 +35,12 @@ class Bar:
         if self._progress is not None:
             self._progress.update(self._progress.task_ids[0], completed=self.done, description=self.what)
 
-    def say(self, what: str) -> None:
-        """What is being done now."""
-        self.what = what
+    def say(self, what: str, done: int | None = None, total: int | None = None) -> None:
+        """What is being done now, and how far it is where that is known."""
+        self.what, self.total = what, self.total if done is None else total
+        self.done = self.done if done is None else done
         if self._progress is not None:
-            self._progress.update(self._progress.task_ids[0], description=what)
+            self._progress.update(self._progress.task_ids[0], description=what, total=self.total, completed=self.done)
 
     def stop(self) -> None:
         """Take the bar away."""

@@ -6,16 +6,26 @@ from typing import Annotated
 
 import typer
 
+from headrace.outputs.cli.optional import OptionalNumbers
 from headrace.outputs.cli.saving import AgentOption, ResultsOption, SaveOption, StoreOption, wish
-from headrace.outputs.cli.shared import Format, FormatOption, ScenarioFile, answer
+from headrace.outputs.cli.shared import Format, FormatOption, PhaseOption, ScenarioFile, answer, stated
 
 Rates = Annotated[bool, typer.Option("--rates", help="Add the rate of every reaction with its range over the optima.")]
+
+
+Bands = Annotated[
+    int, typer.Option("--bands", metavar="[N]", help="Bands over N samples of what is uncertain (1000).", show_default=False)
+]
+Seed = Annotated[int, typer.Option("--seed", min=0, help="Of the samples: the same seed gives the same bands.")]
 
 
 def refills(
     scenario: ScenarioFile,
     format: FormatOption = Format.table,
     rates: Rates = False,
+    bands: Bands = 0,
+    seed: Seed = 0,
+    phase: PhaseOption = "",
     save: SaveOption = False,
     results: ResultsOption = None,
     store: StoreOption = "",
@@ -26,9 +36,10 @@ def refills(
     Ledger, requirement per refill and group, closed refills, cost, cover, findings.
     """
     wished = wish(save, results, store, agent)
-    return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say, rates), format, rates, wished)
+    extra = stated(phase=phase, bands=bands, seed=seed)
+    return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say, rates, **extra), format, rates, wished)
 
 
 def register(app: typer.Typer) -> None:
     """Add the command."""
-    app.command()(refills)
+    app.command(cls=OptionalNumbers)(refills)

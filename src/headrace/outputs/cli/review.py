@@ -68,7 +68,9 @@ def answered(desk: Desk, question: object) -> Result:
     """The requirement of a scenario, with the ceiling of each of its outlets beside it."""
     result = desk.refills(question)  # type: ignore[arg-type]
     outlets = dict.fromkeys(demand.outlet for demand in result.case.demands)
-    return msgspec.structs.replace(result, related=tuple(desk.ceiling(question, outlet) for outlet in outlets))  # type: ignore[arg-type]
+    phase = shared.stated(phase=result.plan.binding if result.plan else "")
+    related = tuple(desk.ceiling(question, outlet, **phase) for outlet in outlets)  # type: ignore[arg-type]
+    return msgspec.structs.replace(result, related=related)
 
 
 def documents(desk: Desk, results: Sequence[Result], scenarios: Sequence[Path]) -> tuple[Document, ...]:

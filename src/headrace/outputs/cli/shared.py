@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from enum import StrEnum
 from pathlib import Path
-from typing import TYPE_CHECKING, Annotated
+from typing import TYPE_CHECKING, Annotated, Any
 
 import typer
 
@@ -31,9 +31,15 @@ class Format(StrEnum):
 
 
 ScenarioFile = Annotated[Path, typer.Argument(metavar="SCENARIO", help="The scenario file (TOML or JSON).", show_default=False)]
+PhaseOption = Annotated[str, typer.Option("--phase", metavar="NAME", help="One phase of a scenario with phases.", show_default=False)]
 FormatOption = Annotated[
     Format, typer.Option("--format", help="table for people, json for machines, csv for one table, md for documents.")
 ]
+
+
+def stated(**options: Any) -> dict[str, Any]:
+    """The options that were given (those that are empty or 0 were not)."""
+    return {name: value for name, value in options.items() if value}
 
 
 def desk() -> Desk:

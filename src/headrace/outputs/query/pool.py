@@ -182,6 +182,11 @@ class Queries:
     def __init__(self, pool: Pool, seconds: float = 10.0, largest: int = 50_000_000) -> None:
         self.pool, self.seconds, self.largest = pool, seconds, largest
 
+    @property
+    def store(self) -> None:
+        """Files are the truth here; there is no store elsewhere."""
+        return None
+
     def ask(self, request: wire.Request) -> wire.Reply:
         """The reply, whatever became of the query."""
         asked = msgspec.structs.replace(request, largest=self.largest)

@@ -96,17 +96,15 @@ def post(site: Site, request: Request, what: str) -> Response:
 
 def keep(site: Site, run: Run) -> None:
     """Save a run where the service saves."""
-    if site.store:
-        from headrace.outputs.stores.store import open_store  # files need no network client
-
-        open_store(site.store).put_graph(run.iri, run.trig)
+    if site.engine.store is not None:
+        site.engine.store.put_graph(run.iri, run.trig)
     else:
         assert site.results is not None
         folder.save(Path(site.results), run)
 
 
 def _can_save(site: Site) -> bool:
-    return site.results is not None or bool(site.store)
+    return site.results is not None or site.engine.store is not None
 
 
 def _question(site: Site, request: Request, what: str) -> tuple[Question, bool]:

@@ -89,12 +89,12 @@ def site(plan: Plan) -> Iterator[Site]:
         if plan.store:
             from headrace.outputs.stores.remote import RemoteQueries  # files need no network client
 
-            yield Site(RemoteQueries(plan.store, plan.limits), scenarios, None, plan.store, plan.limits, plan.cors)
+            yield Site(RemoteQueries(plan.store, plan.limits), scenarios, None, plan.limits, plan.cors)
             return
         extra = tuple((name, str(path)) for name, path in plan.extra)
         settings = wire.Settings("query", str(plan.results or ""), extra, plan.memory)
         with Pool(settings, plan.workers, plan.patience, reserve=1) as pool:
             queries = Queries(pool, plan.limits.seconds, plan.limits.result)
-            yield Site(queries, scenarios, plan.results, "", plan.limits, plan.cors)
+            yield Site(queries, scenarios, plan.results, plan.limits, plan.cors)
     finally:
         scenarios.close()

@@ -13,8 +13,19 @@ from headrace.outputs.service.asking_types import Question, Reply
 from headrace.outputs.service.http import HttpError
 
 
+class Graphs(Protocol):
+    """Where a run can be put as a graph."""
+
+    def put_graph(self, iri: str, trig: bytes) -> None:
+        """Make a named graph what the TriG says of it."""
+
+
 class Engine(Protocol):
-    """Whoever answers queries: workers here, or a store elsewhere."""
+    """Whoever answers queries: workers here, or a store elsewhere, which takes graphs as well."""
+
+    @property
+    def store(self) -> Graphs | None:
+        """The store elsewhere; None for workers here."""
 
     def ask(self, request: wire.Request) -> wire.Reply:
         """The reply, whatever became of the query."""
@@ -37,20 +48,19 @@ class Limits(Struct, frozen=True):
 
 
 class Site:
-    """engine, scenarios: who answers. results: where answers to scenarios are saved (None = a store, or nowhere).
-    store: address of the store that is used instead of files. cors: the Origin that may read, "*" for any, "" for none."""
+    """engine, scenarios: who answers. results: where answers to scenarios are saved (None = in the engine's store, or
+    nowhere). cors: the Origin that may read, "*" for any, "" for none."""
 
     def __init__(
         self,
         engine: Engine,
         scenarios: Scenarios | None = None,
         results: Path | None = None,
-        store: str = "",
         limits: Limits | None = None,
         cors: str = "*",
     ) -> None:
         self.engine, self.scenarios = engine, scenarios
-        self.results, self.store = results, store
+        self.results = results
         self.limits = limits or Limits()
         self.cors = cors
 
