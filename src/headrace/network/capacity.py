@@ -80,6 +80,11 @@ def needed(refill: RefillRow) -> float:
     return (refill.most if refill.nominal is None else refill.nominal) or 0.0
 
 
+def enzyme_mass(facts: Facts, case: Case, row: str, sign: int, rate: float) -> Span | None:
+    """(low, high) mg of enzyme per gDW that a row takes at a rate in mmol/gDW/h, running forward (+1) or backward; None if unknown."""
+    return _enzyme(facts, case, row, sign, rate, "", None).mass
+
+
 def _group(group: GroupRow, case: Case) -> Sized:
     need = (group.most if group.nominal is None else group.nominal) or 0.0
     rows = {member.removesuffix("-in-reverse") for member in group.members}
