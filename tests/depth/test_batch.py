@@ -77,13 +77,31 @@ def test_points_without_an_answer_are_said() -> None:
     assert found.optimal.tolist() == [True, False, True] and np.isnan(found.objective[1]) and np.isnan(found.read[1]).all()
 
 
-def test_other_coefficients_go_to_the_solver() -> None:
-    """a x0 = 1: x0 = 1 / a."""
+@given(st.lists(st.lists(SMALL, min_size=6, max_size=6), min_size=3, max_size=3), st.integers(0, 10_000))
+def test_equals_fresh_solves_with_other_coefficients(rows: list[list[int]], seed: int) -> None:
+    rng = np.random.default_rng(seed)
+    matrix = np.array(rows, dtype=float)
+    matrix[0, :2] = matrix[2, 1] = 1.0
+    given_, cost = programme(matrix, (-1.0, 1.0), 10.0), rng.integers(1, 5, 6).astype(float)
+    number, entries = 60, ((0, 0), (0, 1), (2, 1))
+    lower = rng.uniform(0, 2, (number, 1))
+    values = rng.uniform(0.5, 2, (number, 3))
+    points = batch.Points(np.array([6]), lower, lower, entries, values)
+    found = batch.solve(given_, cost, points, np.eye(6))
+    for k in range(number):
+        expected = fresh(given_, cost, points, k)
+        assert found.optimal[k] == (not np.isnan(expected))
+        if found.optimal[k]:
+            assert found.objective[k] == pytest.approx(expected, abs=1e-6)
+
+
+def test_other_coefficients_share_a_basis() -> None:
+    """a x0 = b: x0 = b / a, one basis for all."""
     given_ = programme(np.array([[1.0]]), (1.0, 1.0), 100.0)
-    factors = np.array([[1.0], [2.0], [4.0]])
-    points = batch.Points(np.array([], dtype=int), np.zeros((3, 0)), np.zeros((3, 0)), ((0, 0),), factors)
+    factors, right = np.linspace(1, 4, 50)[:, None], np.linspace(2, 3, 50)[:, None]
+    points = batch.Points(np.array([1]), right, right, ((0, 0),), factors)
     found = batch.solve(given_, np.ones(1), points, np.eye(1))
-    assert found.read[:, 0].tolist() == [1.0, 0.5, 0.25] and found.solves == 3 and found.bases == 0
+    assert found.read[:, 0] == pytest.approx((right / factors)[:, 0]) and found.solves == 1 and found.bases == 1
 
 
 def test_a_row_more() -> None:

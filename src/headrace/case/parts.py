@@ -13,6 +13,7 @@ from typing import Any
 from headrace import units
 from headrace.case.document import place, read
 from headrace.errors import InputError
+from headrace.names import nearest
 from headrace.values.case import Scenario
 from headrace.values.phases import Phase
 
@@ -62,6 +63,22 @@ def phases(scenario: Scenario, uncertain: bool = False) -> tuple[Phase, ...]:
         hours = float(units.read(own["duration"], units.DURATION).value)
         found.append(Phase(name, _part(scenario, raw, moved), hours, biomass, key))
     return tuple(found)
+
+
+def one(scenario: Scenario, phase: str = "", uncertain: bool = False) -> Scenario:
+    """The scenario of one phase by its name; a scenario without phases is its own. uncertain: see `phases`.
+
+    Raises InputError where the scenario has phases and none of them is named, or a name fits none.
+    """
+    found = phases(scenario, uncertain)
+    names = [each.name for each in found]
+    if phase in names:
+        return found[names.index(phase)].scenario
+    if not found and not phase:
+        return scenario
+    words = f"no phase is called {phase!r}" if phase else "the scenario has phases, and this is asked of one"
+    accepted = ", ".join(names) or "nothing: the scenario has no phases"
+    raise InputError(words, file=scenario.path, key="--phase", accepted=accepted, near=nearest(phase, names))
 
 
 def _merge(raw: dict[str, Any], own: Mapping[str, Any], key: str, moved: dict[str, str]) -> None:

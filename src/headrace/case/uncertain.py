@@ -14,7 +14,7 @@ from msgspec import UNSET
 
 from headrace import names, units
 from headrace.case.catalysts import Catalysts
-from headrace.case.energy import energy, known
+from headrace.case.energy import energy
 from headrace.case.medium import medium
 from headrace.case.model import Document, Spread
 from headrace.case.outlets import demands, growth
@@ -92,16 +92,14 @@ class _Stated:
     def _p_o(self, spread: Spread) -> Input:
         """A P/O keeps its own scale: motive protons per ATP = factor / (P/O) - offset, found from two values."""
         key, path = "uncertainty.p-o-nadh", ("energy", "p-o-nadh")
-        own, fact = self.sheet.document.energy.p_o_nadh, known(self.sheet, "p-o-nadh", self.oxygen)
-        stated = float(units.read(own, units.RATIO).value) if own is not UNSET else None
-        about = Input("P/O for NADH", "p-o", "", stated or (float(fact.value) if fact else 0.0), 0, 0, "mol/mol")
+        own = self.sheet.document.energy.p_o_nadh
+        nominal = self._needed(None if own is UNSET else float(units.read(own, units.RATIO).value), key)
+        about = Input("P/O for NADH", "p-o", "", nominal, 0, 0, "mol/mol")
         found = ranged(self.sheet, key, spread, lambda text: float(units.read(text, units.RATIO).value), about)
         with self.sheet.at(key):
             low, high = (self._protons(path, value) for value in (found.low, found.high))
         factor = (low - high) / (1 / found.low - 1 / found.high)
-        inside = found.low <= found.nominal <= found.high
-        nominal = found.nominal if stated is not None or inside else (found.low + found.high) / 2
-        return msgspec.structs.replace(found, factor=factor, offset=factor / found.low - low, nominal=nominal)
+        return msgspec.structs.replace(found, factor=factor, offset=factor / found.low - low)
 
     def _protons(self, path: Path, ratio: float) -> float:
         """Motive protons per ATP at a P/O."""
@@ -192,8 +190,8 @@ class _Stated:
     def _needed(self, value: float | None, key: str) -> float:
         if value is None:
             with self.sheet.at(key):
-                words = "there is nothing to vary: the scenario states no rate here"
-                raise InputError(words, accepted="a stated rate, then its range")
+                words = "there is nothing to vary: the scenario states no value here"
+                raise InputError(words, accepted="a stated value, then its range")
         return value
 
     def _with(self, path: Path, text: str) -> Sheet:

@@ -10,7 +10,7 @@ scenario states and nobody measured counts as exact. Least squares and test: `he
 from __future__ import annotations
 
 import math
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -19,12 +19,14 @@ from msgspec.structs import replace
 from headrace.network.build import Network
 from headrace.network.closure import SKIPPED, electrons
 from headrace.solve import squares
-from headrace.values.case import Case
+from headrace.values.answers import RefillAnswer
+from headrace.values.case import Case, Finding
 from headrace.values.facts import Facts
 from headrace.values.measured import Reading, Reconciled, Reconciliation, Recovery, Suspicion
 
 LEVEL = 0.05
 _SAID = 4
+_FAR = 3  # standard errors between what the network asks for and what was measured
 _NAMES = {"C": "carbon", "N": "nitrogen", "P": "phosphorus", "S": "sulfur"}
 
 
@@ -86,10 +88,32 @@ def sized(case: Case, found: Reconciliation) -> Case:
     return replace(case, feeds=feeds, demands=demands, fixed={**case.fixed, **fixed}, **growing)
 
 
-def without_a_way(net: Network) -> tuple[str, ...]:
-    """Compounds whose crossing is fixed and that the network has no way for."""
+def findings(net: Network, found: Reconciliation, answer: RefillAnswer) -> tuple[Finding, ...]:
+    """What the measured rates say about themselves, about what the scenario states, and about the network's own answer."""
+    return tuple(_findings(net, found, answer))
+
+
+def _findings(net: Network, found: Reconciliation, answer: RefillAnswer) -> Iterator[Finding]:
+    host = net.case.host
+    if found.verdict == "gross error":
+        test = f"chi-square {found.h:.4g} with {found.freedom} degrees of freedom, p = {found.p:.2g}"
+        yield Finding("caution", "measured", host, f"the measured rates do not balance ({test}): {found.named}")
+    if found.verdict == "not checked":
+        yield Finding("note", "measured", host, "no balance checks the measured rates: O2 uptake and CO2 release would")
     ways = {(column.kind, column.name) for column in net.columns if column.kind in ("enter", "leave")}
-    return tuple(name for name, rate in net.case.fixed.items() if rate and ("enter" if rate > 0 else "leave", name) not in ways)
+    for slug, rate in net.case.fixed.items():
+        if rate and ("enter" if rate > 0 else "leave", slug) not in ways:
+            words = "was measured, and no way across the membrane runs in this case: its rate is left out"
+            yield Finding("caution", "measured", slug, f"{net.facts.compounds[slug].label} {words}")
+    crossing = {each.compound: each.rate for each in answer.crossings}
+    for row in found.rates if answer.answer == "feasible" else ():
+        if row.measured is None or row.error is None or row.sized or row.compound not in net.facts.compounds:
+            continue
+        predicted = crossing.get(row.compound, 0.0) * (1 if row.direction == "uptake" else -1)
+        if abs(predicted - row.measured) > _FAR * row.error:
+            asked = f"the network asks for {predicted:.4g} mmol/gDW/h at the reconciled rates"
+            yield Finding("caution", "measured", row.compound, f"{row.direction} of {row.label}: {asked}; "
+                          f"{row.measured:.4g} +- {row.error:.4g} was measured")
 
 
 def _items(net: Network) -> list[_Item]:
@@ -166,7 +190,7 @@ def _own(draws: Mapping[str, object]) -> str:
 def _row(net: Network, item: _Item, index: int, base: squares.Fit, best: squares.Fit) -> Reconciled | None:
     """A rate as shown; None for an unmeasured one that the balances don't determine."""
     value, error = float(best.x[index]), float(best.errors[index])
-    if math.isnan(value) and not item.read:
+    if not item.read and (math.isnan(value) or not item.exact and abs(value) < 1e-12):
         return None
     inorganic = {name for role in ("inorganic-carbon", "carbon-dioxide", "oxygen") for name in net.facts.roles[role]}
     organic = not item.compound or item.compound in net.facts.compounds and "C" in net.facts.compounds[item.compound].formula

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from headrace.pages import ledger
+from headrace.pages import beside, ledger
 from headrace.pages.added import added
 from headrace.pages.context import CARBON, RATE, Context, versions
 from headrace.pages.infeasible import repairs, shortage
@@ -48,9 +48,11 @@ def blocks(context: Context, answer: RefillAnswer, with_findings: bool = True) -
     stuck: tuple[Block, ...] = () if solved else (shortage(context, answer.shortage), repairs(context, answer.repairs))
     flows: tuple[Block, ...] = (cost(context, answer), feed(context, answer), crossings(context, answer), *aim(answer))
     return (
+        *beside.before(context),
         *stuck,
         *book,
         *((groups(context, answer), requirement(context, answer)) if solved else ()),
+        *beside.after(context),
         closed(context, answer),
         *(flows if solved else ()),
         *added(context),

@@ -4,13 +4,18 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 
+from headrace.pages.beside import sentences
 from headrace.pages.context import RATE, Context
 from headrace.pages.numbers import joined, show
 from headrace.values.answers import CeilingAnswer, GroupRow, GrowsAnswer, Ledger, RefillAnswer, RefillRow
 
 
 def refills(context: Context, answer: RefillAnswer) -> str:
-    """What is drained, what puts it back, and whether the design carries it."""
+    """What is drained, what puts it back, and whether the design carries it; then what stands beside the answer."""
+    return _refills(context, answer) + sentences(context)
+
+
+def _refills(context: Context, answer: RefillAnswer) -> str:
     if answer.answer != "feasible":
         return _impossible(context, answer)
     book = answer.ledger

@@ -2,10 +2,11 @@
 
     minimise c x   subject to   row_lower_k <= A x <= row_upper_k,   col_lower_k <= x <= col_upper_k     for k = 1 .. N
 
-Bounds on rows and columns differ from point to point, A and c do not: then reduced costs do not change, and a basis that is
-optimal at one point is optimal wherever its basic values stay within bounds (checked for all points at once). Points that
-no kept basis serves go to the warm solver, whose basis is kept in turn. Where a basis does not pay for its factors, the
-solver alone goes on. Points with other coefficients in A go to the solver one by one.
+Where only bounds differ from point to point, reduced costs do not change, and a basis that is optimal at one point is
+optimal wherever its basic values stay within bounds (checked for all points at once). Where some coefficients of A differ
+too, the basis' inverse is brought up to date by its few changed rows (Woodbury), and reduced costs are checked as well.
+Points that no kept basis serves go to the warm solver, whose basis is kept in turn. Where a basis does not pay for its
+factors, the solver alone goes on.
 """
 
 from __future__ import annotations
@@ -22,6 +23,8 @@ Places = NDArray[np.intp]
 Flags = NDArray[np.bool_]
 
 _TOLERANCE = 1e-9
+_DUAL = 1e-7
+_SINGULAR = 1e-9
 _CHUNK = 1024
 _PATIENCE = 12  # bases in a row that serve fewer points than _WORTH: then no more are kept for this chunk
 _WORTH = 4
@@ -72,7 +75,7 @@ def solve(programme: Programme, cost: Floats, points: Points, weights: Floats,
         while len(left):
             at, left = int(left[0]), left[1:]
             table.put(at, session.at(points, at))
-            if table.optimal[at] and not points.entries and poor < _PATIENCE and len(left):
+            if table.optimal[at] and poor < _PATIENCE and len(left):
                 before, vertex_ = len(left), _vertex(programme, cost, session.basis(), points)
                 left = left if vertex_ is None else table.fill(vertex_, points, left)
                 worth = before - len(left) >= _WORTH
@@ -120,31 +123,88 @@ class _Table:
 
 
 @dataclass(frozen=True)
+class _Moved:
+    """Coefficients that differ, as seen from a vertex: B(s) = B + U V(s)', with U the unit columns of the rows they stand in.
+
+    base: (E) the programme's own coefficients; at: (E) the row of each, as a position among those rows; basic, out: which
+    entries stand in basic columns and which do not, with where: (E) the position there; inverse: B^-1 U; price: c_B B^-1 U;
+    moves: all basic values per non-basic value, -B^-1 N; reduced: reduced costs with B; sides: see `_wrong`; same: non-basic
+    variables that are fixed at every point.
+    """
+
+    base: Floats
+    at: Places
+    basic: Flags
+    where: Places
+    inverse: Floats
+    price: Floats
+    moves: Floats
+    reduced: Floats
+    sides: Floats
+    same: Flags
+
+    def shift(self, values: Floats, basic: Floats, out: Floats) -> tuple[Floats, Flags]:
+        """Basic values with the moved coefficients, and whether the basis is optimal with them. (N, ...) arrays.
+
+        Woodbury: x_B = t - W (I + M)^-1 V't with t = z - W g, W = B^-1 U, M = V'W, g = what non-basic columns add to the rows;
+        prices of the rows q = c_B W (I + M)^-1; reduced costs d - q V' moves, less q times what moved in non-basic columns.
+        """
+        number, size = len(values), self.inverse.shape[1]
+        moved = values - self.base
+        inside, outside = np.flatnonzero(self.basic), np.flatnonzero(~self.basic)
+        added, lead, mixed = np.zeros((number, size)), np.zeros((number, size)), np.zeros((number, size, size))
+        for e in outside:
+            added[:, self.at[e]] += moved[:, e] * out[:, self.where[e]]
+        start = basic - added @ self.inverse.T
+        for e in inside:
+            lead[:, self.at[e]] += moved[:, e] * start[:, self.where[e]]
+            mixed[:, self.at[e]] += moved[:, e, None] * self.inverse[self.where[e]]
+        mixed += np.eye(size)
+        known = np.abs(np.linalg.det(mixed)) > _SINGULAR
+        mixed[~known] = np.eye(size)
+        found = start - np.linalg.solve(mixed, lead[..., None])[..., 0] @ self.inverse.T
+        prices = np.linalg.solve(mixed.swapaxes(1, 2), np.broadcast_to(self.price, (number, size))[..., None])[..., 0]
+        reduced = self.reduced - (prices[:, self.at[inside]] * moved[:, inside]) @ self.moves[self.where[inside]]
+        for e in outside:
+            reduced[:, self.where[e]] -= prices[:, self.at[e]] * moved[:, e]
+        return found, known & ~(_wrong(reduced, self.sides) & ~self.same).any(axis=1)
+
+
+@dataclass(frozen=True)
 class _Vertex:
     """A basis with its inverse: basic = constant + moves @ (values of the non-basic variables whose bounds vary).
 
-    driven: positions in `varying` of those, and at_upper: at which of their bounds they stand. lower, upper: the bounds of the
-    basic variables by the programme; watched: pairs (position among the basic ones, position in `varying`) of those that vary.
-    resting: values of all columns that are not basic and do not vary, else 0. width: number of columns.
+    driven: positions in `varying` of those, and at_upper: at which of their bounds they stand; beside: their positions among
+    all non-basic ones, whose other values are `still`. lower, upper: the bounds of the basic variables by the programme;
+    watched: pairs (position among the basic ones, position in `varying`) of those that vary. resting: values of all columns
+    that are not basic and do not vary, else 0. width: number of columns. moved: of points whose coefficients differ.
     """
 
     basic: Places
     constant: Floats
     moves: Floats
     driven: Places
+    beside: Places
+    still: Floats
     at_upper: Flags
     lower: Floats
     upper: Floats
     watched: tuple[Places, Places]
     resting: Floats
     width: int
+    moved: _Moved | None
 
     def serve(self, points: Points, chosen: Places, weights: Floats) -> tuple[Flags, Floats]:
-        """Per chosen point: whether the vertex is feasible there, and what the weights read of x."""
+        """Per chosen point: whether the vertex is optimal there, and what the weights read of x."""
         out = np.where(self.at_upper, points.upper[np.ix_(chosen, self.driven)], points.lower[np.ix_(chosen, self.driven)])
         known = np.isfinite(out).all(axis=1)
         out[~known] = 0.0
         basic = self.constant + out @ self.moves.T
+        if self.moved is not None:
+            every = np.repeat(self.still[None], len(chosen), axis=0)
+            every[:, self.beside] = out
+            basic, good = self.moved.shift(points.values[chosen], basic, every)
+            known &= good
         slack = _TOLERANCE * (1 + np.abs(basic).max(axis=1, initial=0.0))[:, None]
         fixed = np.ones(len(self.basic), dtype=bool)
         fixed[self.watched[0]] = False
@@ -189,8 +249,13 @@ def _bounds(programme: Programme) -> tuple[Floats, Floats]:
             np.concatenate([programme.col_upper, programme.row_upper]))
 
 
+def _wrong(reduced: Floats, sides: Floats) -> Flags:
+    """Reduced costs of the wrong sign. sides: 1 at an upper bound, -1 at a lower one, 0 between none (any cost is wrong)."""
+    return np.asarray(np.where(sides == 0, np.abs(reduced), sides * reduced) > _DUAL)
+
+
 def _vertex(programme: Programme, cost: Floats, basis: Basis, points: Points) -> _Vertex | None:
-    """The basis' inverse; None if it is singular or its reduced costs have the wrong sign for bounds that are no equalities."""
+    """The basis' inverse; None if it is singular or, with the programme's coefficients throughout, not optimal anywhere."""
     n, m = len(programme.col_lower), len(programme.row_lower)
     lower, upper = _bounds(programme)
     places = np.concatenate([basis.columns, basis.rows])
@@ -198,25 +263,37 @@ def _vertex(programme: Programme, cost: Floats, basis: Basis, points: Points) ->
     wide = np.zeros((m, n + m))
     wide[programme.rows, np.repeat(np.arange(n), np.diff(programme.starts))] = programme.values
     wide[np.arange(m), n + np.arange(m)] = -1.0
+    rows = np.unique(np.array([row for row, _ in points.entries], dtype=np.intp))
+    right = np.hstack([wide[:, out], np.eye(m)[:, rows]])
     try:
-        moves: Floats = -np.asarray(np.linalg.solve(wide[:, basic], wide[:, out]), dtype=np.float64)
+        solved = np.asarray(np.linalg.solve(wide[:, basic], right), dtype=np.float64)
     except np.linalg.LinAlgError:
         return None
+    moves, inverse = -solved[:, : len(out)], solved[:, len(out) :]
     same = lower == upper
     same[points.varying] = (points.lower == points.upper).all(axis=0)
     costs = np.concatenate([cost, np.zeros(m)])
     reduced = costs[out] + costs[basic] @ moves
     bounded = np.isin(places[out], (LOWER, UPPER))
-    wrong = np.where(bounded, np.where(places[out] == UPPER, reduced, -reduced), np.abs(reduced)) > 1e-7
-    if (wrong & ~same[out]).any():
+    sides = np.where(bounded, np.where(places[out] == UPPER, 1.0, -1.0), 0.0)
+    if not points.entries and (_wrong(reduced, sides) & ~same[out]).any():
         return None
     varies = np.isin(out, points.varying) & bounded
-    at = np.where(places[out] == UPPER, upper[out], lower[out])
-    still = np.where(bounded & ~varies, at, 0.0)
+    still = np.where(bounded & ~varies, np.where(places[out] == UPPER, upper[out], lower[out]), 0.0)
     resting = np.zeros(n)
     resting[out[out < n]] = still[out < n]
     order = {int(variable): position for position, variable in enumerate(points.varying)}
     watched = [(i, order[int(variable)]) for i, variable in enumerate(basic) if int(variable) in order]
     pairs = np.array(watched, dtype=np.intp).reshape(-1, 2)
+    moved = None
+    if points.entries:
+        base = np.array([wide[row, column] for row, column in points.entries])
+        own = {int(variable): position for position, variable in enumerate(basic)}
+        other = {int(variable): position for position, variable in enumerate(out)}
+        inside = np.array([column in own for _, column in points.entries])
+        where = np.array([own.get(column, other.get(column, 0)) for _, column in points.entries], dtype=np.intp)
+        at = np.searchsorted(rows, [row for row, _ in points.entries])
+        moved = _Moved(base, at, inside, where, inverse, costs[basic] @ inverse, moves, reduced, sides, same[out])
     return _Vertex(basic, moves @ still, moves[:, varies], np.array([order[int(v)] for v in out[varies]], dtype=np.intp),
-                   places[out][varies] == UPPER, lower[basic], upper[basic], (pairs[:, 0], pairs[:, 1]), resting, n)
+                   np.flatnonzero(varies), still, places[out][varies] == UPPER, lower[basic], upper[basic],
+                   (pairs[:, 0], pairs[:, 1]), resting, n, moved)

@@ -11,6 +11,10 @@ from msgspec import Struct
 
 from headrace.values.case import Case, Finding
 from headrace.values.facts import Facts
+from headrace.values.fold import Fold
+from headrace.values.measured import Reconciliation
+from headrace.values.phases import Plan
+from headrace.values.uncertainty import Bands
 
 
 class PoolTerm(Struct, frozen=True):
@@ -302,6 +306,10 @@ class Result(Struct, frozen=True):
     facts_version: hash of all facts used. plugins: names of the plugins that took part. facts: what the answer was
     made from (labels, sources and readings for whoever shows it). related: answers to other questions on the same
     scenario that a report shows beside this one (the ceiling of each outlet). tables: what checks add.
+
+    measured: what the balances say about rates measured on this strain. parent: the same question on the strain that
+    exists, and folds: this one against it. plan: of a scenario with phases, whose answers are `phases`; the answer here is
+    that of the phase that binds. bands: of uncertain inputs.
     """
 
     kind: str
@@ -315,6 +323,12 @@ class Result(Struct, frozen=True):
     plugins: tuple[str, ...] = ()
     related: tuple[Result, ...] = ()
     tables: tuple[AddedTable, ...] = ()
+    measured: Reconciliation | None = None
+    parent: Result | None = None
+    folds: tuple[Fold, ...] = ()
+    plan: Plan | None = None
+    phases: tuple[Result, ...] = ()
+    bands: Bands | None = None
 
 
 class Document(Struct, frozen=True):

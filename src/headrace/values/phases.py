@@ -35,9 +35,10 @@ class Carried(Struct, frozen=True):
 
 
 class Flow(Struct, frozen=True):
-    """A crossing or product over a phase or the plan. into the cell positive. total: mmol/L; grams: g/L (None if unweighed);
+    """What is taken up or made over a phase or the plan. kind: feed | product | taken | made. total: mmol/L; grams: g/L (None
 
-    per_biomass: mmol per gDW that the plan ends with; at_end: mmol/L/h, the largest.
+    where nothing gives a molar mass); per_biomass: mmol per gDW that the phase or plan ends with; at_end: mmol/L/h at the end
+    of the phase (over the plan: the largest of all).
     """
 
     kind: str

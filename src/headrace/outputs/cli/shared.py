@@ -31,7 +31,9 @@ class Format(StrEnum):
 
 
 ScenarioFile = Annotated[Path, typer.Argument(metavar="SCENARIO", help="The scenario file (TOML or JSON).", show_default=False)]
-PhaseOption = Annotated[str, typer.Option("--phase", metavar="NAME", help="One phase of a scenario with phases.", show_default=False)]
+PhaseOption = Annotated[
+    str, typer.Option("--phase", metavar="NAME", help="One phase of a scenario with phases.", show_default=False)
+]
 FormatOption = Annotated[
     Format, typer.Option("--format", help="table for people, json for machines, csv for one table, md for documents.")
 ]
