@@ -7,6 +7,7 @@ from collections import defaultdict
 from typing import NamedTuple
 
 from headrace.graph import terms
+from headrace.graph.read import short as known_short
 from headrace.outputs.rdf.terms import RUN_BASE
 from headrace.outputs.service.site import Site
 
@@ -116,8 +117,8 @@ def value_of(row: dict[str, dict[str, str]], name: str, label: str = "") -> Valu
 
 
 def short(iri: str) -> str:
-    """An address without its base."""
-    return iri.removeprefix(terms.ID) if iri.startswith(terms.ID) else iri.removeprefix(terms.HR)
+    """An address without its base, or with a usual prefix in place of it."""
+    return iri.removeprefix(terms.HR) if iri.startswith(terms.HR) else known_short(iri)
 
 
 def _outgoing(site: Site, iri: str) -> list[Property]:

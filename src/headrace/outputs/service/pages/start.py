@@ -114,7 +114,8 @@ def vocabulary(site: Site) -> Response:
           {labelled("?s", "label")} OPTIONAL {{ ?s <{unit}>/<{terms.LABEL}> ?unit }} }} ORDER BY LCASE(?label) ?s"""
     )
     parts = []
-    for row in rows:
+    terms_once = {row["s"]["value"]: row for row in reversed(rows)}
+    for row in reversed(terms_once.values()):
         said = {name: term["value"] for name, term in row.items()}
         kind = "class" if said["class"].endswith("#Class") else "property"
         name = said["s"].removeprefix(terms.HR)
