@@ -145,7 +145,8 @@ CONCENTRATION = Kind(
     (_form("mol/L", 100, "1e-12", zero=False),),
 )
 
-NAMED: dict[str, Kind] = {"share": SHARE, "factor": FACTOR, "concentration": CONCENTRATION, "energy": ENERGY, "rate": MOLAR_RATE}
+NAMED: dict[str, Kind] = {"share": SHARE, "factor": FACTOR, "concentration": CONCENTRATION, "energy": ENERGY, "rate": MOLAR_RATE,
+                          "cell density": CELL_DENSITY}
 
 _NUMBER = re.compile(r"\s*([+-]?\d{1,30}(?:\.\d{1,30})?(?:[eE][+-]?\d{1,2})?)\s*(.*?)\s*", re.DOTALL)
 _PIECE = re.compile(r"([A-Za-zµ]+|%)(\^?-1)?")
@@ -183,7 +184,9 @@ def read(text: object, kind: Kind) -> Amount:
 
 
 def quantity(text: object, what: str, key: str = "") -> Fraction:
-    """A number with a unit, for options of plugins. what: share (in %), factor, concentration (mol/L), energy (kJ/mol), rate.
+    """A number with a unit, for options of plugins.
+
+    what: share (in %), factor, concentration (mol/L), energy (kJ/mol), rate (mmol/gDW/h), cell density (g/L).
 
     Raises InputError with the key of the scenario for anything else than such a quantity.
 
