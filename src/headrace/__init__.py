@@ -24,6 +24,8 @@ In Python, the names below are the same calls that the commands make:
     import headrace
     result = headrace.refills(headrace.read("scenario.toml"))
     result.answer.ledger.refilled        # mmol skeletons/gDW/h
+    result.to_frame("groups")            # a pandas table; to_rdf() gives its graph, save() keeps it
+    headrace.graph()                     # facts and saved answers as an rdflib dataset
 """
 
 from __future__ import annotations
@@ -31,22 +33,33 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
+    from headrace import graph
     from headrace.case import from_dict, read
     from headrace.graph.load import load
-    from headrace.run import ceiling, drains, grows, refills
+    from headrace.outputs.python import ceiling, drains, grows, refills
 
 __version__ = "0.1.0"
-__all__ = ["__version__", "ceiling", "drains", "from_dict", "grows", "load", "read", "refills"]
+__all__ = ["__version__", "ceiling", "drains", "from_dict", "graph", "grows", "load", "read", "refills"]
 
 
 def __getattr__(name: str) -> Any:
     """The public calls, imported when first asked for, so that `import headrace` itself costs nothing."""
     if name not in __all__:
         raise AttributeError(f"module 'headrace' has no attribute {name!r}")
-    from headrace import case, graph, run  # a command that needs none of the three should not pay for them
+    from headrace import case, graph  # a command that needs none of them should not pay for them
+    from headrace.outputs import python  # as above
 
-    home = {"from_dict": case, "load": graph, "read": case}.get(name, run)
+    if name == "graph":
+        return graph
+    home = {"from_dict": case, "load": graph, "read": case}.get(name, python)
     return getattr(home, name)
+
+
+def _linked(results: Any = None) -> Any:
+    """What `headrace.graph()` gives; the package `headrace.graph` asks for it here, since it stands far above."""
+    from headrace.outputs.python import graph as linked  # as above
+
+    return linked(results)
 
 
 def __dir__() -> list[str]:

@@ -49,7 +49,7 @@ def test_functions_fit_on_a_screen(capsys: pytest.CaptureFixture[str]) -> None:
 
 
 def test_the_public_names_are_this_list() -> None:
-    assert headrace.__all__ == ["__version__", "ceiling", "drains", "from_dict", "grows", "load", "read", "refills"]
+    assert headrace.__all__ == ["__version__", "ceiling", "drains", "from_dict", "graph", "grows", "load", "read", "refills"]
     assert all(getattr(headrace, name) for name in headrace.__all__)
     assert dir(headrace) == headrace.__all__
     with pytest.raises(AttributeError, match="no attribute 'refil'"):

@@ -7,7 +7,7 @@ text on every run.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -61,13 +61,18 @@ def to_rdflib(
     folders: Sequence[Path] | None = None, extra: Sequence[tuple[str, Path]] = (), *, derived: bool = True
 ) -> rdflib.Dataset:
     """The dataset as rdflib terms, with number text as written. Query it with SPARQL of your own making only."""
+    return as_rdflib(dataset(folders, extra, derived=derived))
+
+
+def as_rdflib(quads: Iterable[Quad], *, union: bool = False) -> rdflib.Dataset:
+    """Statements as an rdflib dataset with bound prefixes. union: its default graph is the union of all graphs."""
     import rdflib  # takes longer to load than most commands take in all
     from rdflib.graph import DATASET_DEFAULT_GRAPH_ID  # as above
 
-    target = rdflib.Dataset()
+    target = rdflib.Dataset(default_union=union)
     for prefix, base in terms.PREFIXES.items():
-        target.bind(prefix, base)
-    for quad in dataset(folders, extra, derived=derived):
+        target.bind(prefix, base, override=True, replace=True)
+    for quad in quads:
         name = quad.graph_name
         graph = rdflib.URIRef(name.value) if isinstance(name, NamedNode) else DATASET_DEFAULT_GRAPH_ID
         target.graph(graph).add(tuple(_rdflib_term(rdflib, term) for term in (quad.subject, quad.predicate, quad.object)))

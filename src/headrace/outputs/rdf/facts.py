@@ -8,9 +8,10 @@ from pathlib import Path
 from pyoxigraph import NamedNode, Quad
 
 from headrace import paths
-from headrace.graph import load, terms
+from headrace.graph import terms
 from headrace.graph.derive import derived
 from headrace.graph.files import fact_files, version
+from headrace.graph.load import load
 from headrace.graph.read import quads as statements
 
 FACTS = NamedNode(terms.FACTS_GRAPH)

@@ -22,6 +22,7 @@ _TITLES = {
     "Drain": "Drains",
     "Group": "Requirement by group",
     "Requirement": "Requirement by refill",
+    "Closed": "Closed refills",
     "RemovalRate": "Removals",
     "FedSubstrate": "Feed",
     "Crossing": "Across the cell's boundary",
@@ -34,13 +35,16 @@ _TITLES = {
     "Closure": "Closure",
     "Draw": "What a mole of each outlet takes",
 }
-_ORDER = ("Finding", "Shortage", "Repair", "Group", "Requirement", "Drain", "Draw", "FedSubstrate", "Crossing")
+_ORDER = ("Finding", "Shortage", "Repair", "Group", "Requirement", "Closed", "Drain", "Draw", "FedSubstrate", "Crossing")
 # What people see of each kind, in this order; all the rest is in the formats for machines. Kinds that are not listed show all.
 _COLUMNS = {
     "Finding": ("findingLevel", "about", "message", "check", "citation"),
     "Group": ("prefLabel", "least", "nominal", "most", "capacity", "cover", "necessary", "member", "split"),
-    "Requirement": ("prefLabel", "compartment", "least", "nominal", "most", "capacity", "cover", "necessary", "open", "reason",
-                    "ec", "genes", "cofactor", "skeletonsPerTurn", "atp", "carbonFixed", "reading", "citation"),
+    "Requirement": (
+        "prefLabel", "compartment", "least", "nominal", "most", "capacity", "cover", "necessary", "ec", "genes", "cofactor",
+        "skeletonsPerTurn", "atp", "carbonFixed", "reading", "citation",
+    ),
+    "Closed": ("prefLabel", "compartment", "reason", "ec", "genes", "reading", "citation"),
     "Drain": ("outletName", "poolName", "taken", "returned", "shuttled", "net", "carbonNet", "skeletons"),
     "Draw": ("prefLabel", "skeletonsExact", "route", "originNote"),
     "FedSubstrate": ("substrate", "uptake", "carbon"),
@@ -129,14 +133,22 @@ def _short(each: Value) -> Html:
 
 
 def _words(name: str) -> str:
-    last = name.replace("#", "/").rpartition("/")[2].removesuffix("Name").replace("prefLabel", "name").replace("rowKind", "kind")
+    """A property's name as a heading."""
+    last = name.replace("#", "/").rpartition("/")[2].removesuffix("Name")
+    last = {"prefLabel": "name", "rowKind": "kind", "findingLevel": "level"}.get(last, last)
     return "".join(f" {char.lower()}" if char.isupper() else char for char in last).strip()
+
+
+def _kind_shown(part: Said) -> str:
+    """The kind under which a part is shown: closed refills have a table of their own."""
+    kind, is_open = _kind(part), part.get(f"{facts_terms.HR}open")
+    return "Closed" if kind == "Requirement" and is_open and is_open[0].text == "false" else kind
 
 
 def _tables(parts: dict[str, Said], units: dict[str, str]) -> list[Html]:
     by_kind: dict[str, list[Said]] = defaultdict(list)
     for part in parts.values():
-        by_kind[_kind(part)].append(part)
+        by_kind[_kind_shown(part)].append(part)
     known = [each.kind.removeprefix(facts_terms.HR) for each in PARTS.values()]
     order = [*_ORDER, *(kind for kind in known if kind not in _ORDER), *sorted(set(by_kind) - set(known) - set(_ORDER))]
     kinds = [kind for kind in dict.fromkeys(order) if kind in by_kind and kind not in ("Ledger", "")]
