@@ -46,11 +46,13 @@ def __getattr__(name: str) -> Any:
     """The public calls, imported when first asked for, so that `import headrace` itself costs nothing."""
     if name not in __all__:
         raise AttributeError(f"module 'headrace' has no attribute {name!r}")
-    from headrace import case, graph  # a command that needs none of them should not pay for them
-    from headrace.outputs import python  # as above
+    import headrace.graph as graph  # not "from headrace", which would ask this very function for it
 
     if name == "graph":
         return graph
+    from headrace import case  # a command that needs none of them should not pay for them
+    from headrace.outputs import python  # as above
+
     home = {"from_dict": case, "load": graph, "read": case}.get(name, python)
     return getattr(home, name)
 
