@@ -81,7 +81,7 @@ def needed(refill: RefillRow) -> float:
 
 
 def enzyme_mass(facts: Facts, case: Case, row: str, sign: int, rate: float) -> Span | None:
-    """(low, high) mg of enzyme per gDW that a row takes at a rate in mmol/gDW/h, running forward (+1) or backward; None if unknown."""
+    """(low, high) mg of enzyme per gDW that a row takes at a rate in mmol/gDW/h; sign: +1 forward. None if not known."""
     return _enzyme(facts, case, row, sign, rate, "", None).mass
 
 
