@@ -20,7 +20,7 @@ from headrace.errors import InputError
 from headrace.network import aim
 from headrace.network.build import Network, build
 from headrace.network.refills import Refill, open_refills
-from headrace.network.requirement import with_shares
+from headrace.network.requirement import group_label, with_shares
 from headrace.network.samples import Samples
 from headrace.solve import batch, sampling
 from headrace.solve.linear import INFINITY, Floats
@@ -236,21 +236,25 @@ class _Study:
         members: dict[str, list[Refill]] = {}
         for refill in opened:
             members.setdefault(refill.group, []).append(refill)
-        found = [self._group(row, members[row.group]) for row in answer.groups if row.group in members]
+        known = {row.group: row for row in answer.groups}
+        found = [self._group(name, refills, known.get(name)) for name, refills in sorted(members.items())]
         found += [self._refill(row, members[row.group]) for row in answer.refills if row.open and row.nominal is not None]
         weights = np.zeros(self.width)
         for refill in opened:
             weights[refill.column] += refill.skeletons
         refilled = None if answer.ledger is None else answer.ledger.refilled
         found.append(_Outcome("ledger", "refilled", "refilled in all", refilled, weights))
-        for feed in answer.feed:
-            label = f"uptake of {self.net.facts.compounds[feed.substrate].label}"
-            found.append(_Outcome("feed", feed.substrate, label, feed.uptake, self._crossing("enter", (feed.substrate,))))
+        uptakes = {feed.substrate: feed.uptake for feed in answer.feed}
+        for feed in self.case.feeds:
+            label = f"uptake of {self.net.facts.compounds[feed.compound].label}"
+            weights = self._crossing("enter", (feed.compound,))
+            found.append(_Outcome("feed", feed.compound, label, uptakes.get(feed.compound), weights))
         crossing = {each.compound: each.rate for each in answer.crossings}
         for role, words, way, sign in (("oxygen", "uptake of", "enter", 1), ("carbon-dioxide", "release of", "leave", -1)):
             for name in self.net.facts.roles[role]:
                 label = f"{words} {self.net.facts.compounds[name].label}"
-                found.append(_Outcome("crossing", name, label, sign * crossing.get(name, 0.0), self._crossing(way, (name,))))
+                nominal = sign * crossing.get(name, 0.0) if answer.answer == "feasible" else None
+                found.append(_Outcome("crossing", name, label, nominal, self._crossing(way, (name,))))
         return found
 
     def _crossing(self, way: str, names: Sequence[str]) -> Floats:
@@ -261,19 +265,20 @@ class _Study:
                 weights[j] = 1.0 if column.kind == way else -1.0
         return weights
 
-    def _group(self, row: GroupRow, members: Sequence[Refill]) -> _Outcome:
+    def _group(self, name: str, members: Sequence[Refill], row: GroupRow | None = None) -> _Outcome:
         weights = np.zeros(self.width)
         for refill in members:
             weights[refill.column] = 1.0
-        return _Outcome("group", row.group, row.label, row.nominal, weights, self._bounding({refill.row for refill in members}))
+        limits, nominal = self._bounding({refill.row for refill in members}), None if row is None else row.nominal
+        return _Outcome("group", name, group_label(self.net, members), nominal, weights, limits)
 
     def _refill(self, row: RefillRow, members: Sequence[Refill]) -> _Outcome:
         own = next(refill for refill in members if refill.slug == row.refill)
         limits = self._bounding({own.row})
         if row.split == "in proportion to capacity":
             whole = tuple(label for refill in members for label in self._bounding({refill.row}))
-            group = self._group(GroupRow(row.group, "", (), None, None, None, None, None, False, ""), members)
-            return _Outcome("refill", row.refill, row.label, row.nominal, group.weights, limits, (limits, whole))
+            weights = self._group(row.group, members).weights
+            return _Outcome("refill", row.refill, row.label, row.nominal, weights, limits, (limits, whole))
         weights = np.zeros(self.width)
         weights[own.column] = 1.0
         return _Outcome("refill", row.refill, row.label, row.nominal, weights, limits, by_share=row.split.startswith("measured"))
@@ -320,5 +325,5 @@ def _varies(column: Floats) -> bool:
 
 
 def _blocks(number: int) -> int:
-    """Saltelli blocks for a number of samples: the power of two at or below it, 64 to 1024."""
-    return int(min(1024, max(64, 2 ** int(math.log2(number)))))
+    """Saltelli blocks for a number of samples: the power of two at or above it, 64 to 2048."""
+    return int(min(2048, max(64, 2 ** math.ceil(math.log2(number)))))

@@ -200,7 +200,7 @@ def _groups(
         nominal = sum(solved.rate(j) for j in columns)
         capacity = _capacity(net, [r.row for r in refills])
         found[name] = (GroupRow(
-            name, _group_label(net, refills), tuple(sorted(r.slug for r in refills)), max(low, 0.0), nominal, high,
+            name, group_label(net, refills), tuple(sorted(r.slug for r in refills)), max(low, 0.0), nominal, high,
             capacity, _cover(capacity, nominal), aim.necessary(net, columns), _split(net, refills, shares_hold)[0]), refills)
     return found
 
@@ -211,7 +211,8 @@ def _clean(ends: tuple[float, float]) -> tuple[float, float]:
     return low, high
 
 
-def _group_label(net: Network, refills: Sequence[Refill]) -> str:
+def group_label(net: Network, refills: Sequence[Refill]) -> str:
+    """A group's name for people: what its members do, and where."""
     where = next(c.label for c in net.host.compartments if c.slug == refills[0].compartment)
     what = "carboxylation" if refills[0].fixed > 0 else net.facts.reactions[refills[0].reaction].label
     return f"{what} in the {where}"
