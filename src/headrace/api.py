@@ -13,12 +13,19 @@ from headrace.hooks.bench import Bench
 from headrace.hooks.merge import LEVELS
 from headrace.hooks.options import options
 from headrace.names import nearest, slugify
+from headrace.network.alternatives import Alternative, Alternatives
+from headrace.network.alternatives import of_case as alternatives
+from headrace.network.budgets import Entry as BudgetEntry
+from headrace.network.budgets import PerLitre, carbon_budget, per_litre, pool_budgets
 from headrace.network.build import Network
 from headrace.network.capacity import Sized, sized
 from headrace.network.capacity import groups as sized_groups
+from headrace.network.certified import Certified, certified
+from headrace.network.curve import Bend, Curve, curve
 from headrace.network.drive import Drive, DriveStep
 from headrace.network.drive import Settings as DriveSettings
 from headrace.network.drive import drives as driving_forces
+from headrace.network.prices import Price, prices, settled
 from headrace.network.requirement import require
 from headrace.network.routes import RouteBook, RouteVector
 from headrace.network.triggers import State, fired, leans_on, state_of
@@ -56,9 +63,14 @@ __all__ = [
     "LEVELS",
     "Add",
     "AddedTable",
+    "Alternative",
+    "Alternatives",
     "Answer",
     "Bench",
+    "Bend",
+    "BudgetEntry",
     "Case",
+    "Certified",
     "Change",
     "Close",
     "Column",
@@ -67,6 +79,7 @@ __all__ = [
     "Concentration",
     "Constant",
     "Crossing",
+    "Curve",
     "Demand",
     "Document",
     "DrainRow",
@@ -94,8 +107,10 @@ __all__ = [
     "Notes",
     "Outlet",
     "Page",
+    "PerLitre",
     "PluginError",
     "PoolTerm",
+    "Price",
     "Raise",
     "RateRow",
     "Reaction",
@@ -119,6 +134,10 @@ __all__ = [
     "Unrule",
     "Uptake",
     "Vitamin",
+    "alternatives",
+    "carbon_budget",
+    "certified",
+    "curve",
     "driving_forces",
     "exact",
     "fired",
@@ -126,8 +145,12 @@ __all__ = [
     "nearest",
     "options",
     "page_as_markdown",
+    "per_litre",
+    "pool_budgets",
+    "prices",
     "quantity",
     "require",
+    "settled",
     "shares",
     "sized",
     "sized_groups",

@@ -6,11 +6,35 @@ from headrace.hooks.entry import Entry
 
 FIRST_PARTY: tuple[Entry, ...] = (
     Entry(
+        name="alternatives",
+        module="headrace_plugins.checks.alternatives",
+        attribute="AlternativeSets",
+        summary="All smallest sets of refills (and of changes) that carry a case, ranked, each priced against the best.",
+        hooks=("checks",),
+        families=(),
+    ),
+    Entry(
         name="capacity",
         module="headrace_plugins.checks.capacity",
         attribute="Capacity",
         summary="What stated activities cover, and the enzyme that a design takes from kinetics, with what is not known.",
         hooks=("checks",),
+        families=(),
+    ),
+    Entry(
+        name="certificate",
+        module="headrace_plugins.checks.certificate",
+        attribute="Certificate",
+        summary="The optimum, or that there is none, proven in exact fractions from the solver's final basis.",
+        hooks=("checks",),
+        families=(),
+    ),
+    Entry(
+        name="competition",
+        module="headrace_plugins.checks.competition",
+        attribute="Competition",
+        summary="Shared pools, the price of one more mole, refill needed against yield, budgets, oxygen and heat per litre.",
+        hooks=("checks", "report"),
         families=(),
     ),
     Entry(

@@ -19,12 +19,14 @@ from dataclasses import dataclass
 import numpy as np
 
 from headrace.network import aim
-from headrace.network.build import Network, programme
+from headrace.network.build import Network, build, programme
 from headrace.network.capacity import enzyme_mass
 from headrace.network.changes import STRAIN, SURROUNDINGS, Option, Wide, widen
 from headrace.network.refills import Refill, electrons_used, energy_used, inorganic_fixed, open_refills, steps
 from headrace.solve.linear import INFINITY, Floats, Programme, Session
 from headrace.solve.sets import Found, smallest
+from headrace.values.case import Case
+from headrace.values.facts import Facts
 
 Span = tuple[float, float]
 SEARCHED = 600
@@ -92,6 +94,11 @@ def alternatives(net: Network, changes: bool = False, searched: int = SEARCHED,
     best = min((row.carbon for row in rows), default=0.0)
     rows = [dataclasses.replace(row, extra=row.carbon - best) for row in rows]
     return Alternatives(tuple(sorted(rows, key=_rank)), tuple(choices), found)
+
+
+def of_case(facts: Facts, case: Case, changes: bool = False) -> Alternatives:
+    """`alternatives` of a case's network."""
+    return alternatives(build(facts, case), changes)
 
 
 def candidates(net: Network, changes: bool = False) -> tuple[Network, Programme, tuple[Choice, ...]]:

@@ -31,7 +31,7 @@ ZERO, ONE = Fraction(0), Fraction(1)
 class Bend:
     """A point of the curve. rate: of the outlet, mmol/gDW/h; feed: total uptake; need: all refills; slope: from here on.
 
-    starts, stops: rows that begin or cease to run from here on. yields: mol per mol of feed (None without feed).
+    starts, stops: reactions that begin or cease to run from here on. yields: mol per mol of feed (None without feed).
     """
 
     rate: Fraction
@@ -66,6 +66,16 @@ class Curve:
     bends: tuple[Bend, ...]
     largest: bool
     crossings: tuple[Crossing, ...]
+
+    def at(self, rate: Fraction) -> Bend:
+        """The point at a rate, on the line between its neighbours (from the nearest end where it lies outside)."""
+        here, there = self.bends[0], self.bends[-1]
+        for first, second in zip(self.bends, self.bends[1:], strict=False):
+            if first.rate <= rate <= second.rate:
+                here, there = first, second
+        share = (rate - here.rate) / (there.rate - here.rate) if there.rate > here.rate else ZERO
+        feed, need = (a + share * (b - a) for a, b in ((here.feed, there.feed), (here.need, there.need)))
+        return Bend(rate, feed, need, here.slope)
 
 
 def curve(facts: Facts, case: Case, number: int) -> Curve | None:
@@ -109,8 +119,9 @@ def _bends(net: Network, pieces: Sequence[Piece], asked: Fraction, need: Sparse,
 
 
 def _running(net: Network, piece: Piece, t: Fraction) -> set[str]:
-    """The rows that run at t."""
-    return {c.name for j, c in enumerate(net.columns) if c.kind == "row" and piece.x[j] + t * piece.slopes[j] > 0}
+    """The reactions that run at t, whichever of their rows do."""
+    return {net.case.rows[c.name].reaction for j, c in enumerate(net.columns)
+            if c.kind == "row" and piece.x[j] + t * piece.slopes[j] > 0}
 
 
 def _crossing(bends: Sequence[Bend], what: str, capacity: Fraction) -> Crossing:

@@ -49,12 +49,18 @@ class Price:
     instead: dict[str, Fraction]
 
 
-def settled(facts: Facts, case: Case) -> Network | None:
-    """The network that the answer rests on, every outlet and growth at its solved rate; None if it can't be met."""
+def settled(facts: Facts, case: Case) -> tuple[Case, Network, aim.Aimed]:
+    """(the case with every outlet and growth at its solved rate, the network that its answer rests on, its solution).
+
+    Raises ValueError when the case can't be met.
+    """
     net, solved = in_force(build(facts, case))
+    if isinstance(solved, aim.Aimed) and net.coupled:
+        case = _decoupled(case, solved.scalars)
+        net, solved = in_force(build(facts, case))
     if not isinstance(solved, aim.Aimed):
-        return None
-    return net if not net.coupled else in_force(build(facts, _decoupled(case, solved.scalars)))[0]
+        raise ValueError(f"the case can't be met: {solved.status}")
+    return case, net, solved
 
 
 def _decoupled(case: Case, scalars: Mapping[str, float]) -> Case:
