@@ -9,7 +9,7 @@ from typing import Any
 from typer.core import TyperCommand
 
 # Option -> what it stands for without a number.
-NUMBERS = {"--bands": "1000"}
+NUMBERS = {"--alternatives": "20", "--bands": "1000"}
 
 
 class OptionalNumbers(TyperCommand):

@@ -2,13 +2,29 @@
 
 from __future__ import annotations
 
-from typing import Annotated
+from typing import TYPE_CHECKING, Annotated
 
 import typer
 
+from headrace.outputs.cli.depth import (
+    AlternativesOption,
+    CertifyOption,
+    ChangesOption,
+    DensityOption,
+    FiguresOption,
+    PricesOption,
+    asked,
+    draw,
+    wishes,
+)
 from headrace.outputs.cli.optional import OptionalNumbers
+from headrace.outputs.cli.progress import Bar
 from headrace.outputs.cli.saving import AgentOption, ResultsOption, SaveOption, StoreOption, wish
 from headrace.outputs.cli.shared import Format, FormatOption, PhaseOption, ScenarioFile, answer, stated
+
+if TYPE_CHECKING:
+    from headrace.run import Desk
+    from headrace.values.answers import Result
 
 Rates = Annotated[bool, typer.Option("--rates", help="Add the rate of every reaction with its range over the optima.")]
 
@@ -26,6 +42,12 @@ def refills(
     bands: Bands = 0,
     seed: Seed = 0,
     phase: PhaseOption = "",
+    alternatives: AlternativesOption = 0,
+    changes: ChangesOption = False,
+    prices: PricesOption = False,
+    density: DensityOption = "",
+    figures: FiguresOption = None,
+    certify: CertifyOption = False,
     save: SaveOption = False,
     results: ResultsOption = None,
     store: StoreOption = "",
@@ -37,7 +59,14 @@ def refills(
     """
     wished = wish(save, results, store, agent)
     extra = stated(phase=phase, bands=bands, seed=seed)
-    return answer(scenario, lambda desk, bar: desk.refills(scenario, bar.say, rates, **extra), format, rates, wished)
+    options = wishes(alternatives, changes, prices, density, figures, certify)
+
+    def ask(desk: Desk, bar: Bar) -> Result:
+        result = desk.refills(asked(desk, scenario, **options), bar.say, rates, **extra)
+        draw(desk, result, figures)
+        return result
+
+    return answer(scenario, ask, format, rates, wished)
 
 
 def register(app: typer.Typer) -> None:
