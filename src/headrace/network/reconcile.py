@@ -131,12 +131,13 @@ def _items(net: Network) -> list[_Item]:
             items.append(_Item(label, compound, direction, known_rate, 0.0, content, exact=rate is not None))
     known = {item.compound for item in items}
     role = facts.roles
-    crossing = {*net.host.nutrients, *role["carbon-dioxide"], *role["water"], *role["proton"], *role["inorganic-carbon"]}
+    inorganic = {*role["inorganic-carbon"], *role["carbon-dioxide"]}
+    crossing = {*net.host.nutrients, *role["water"], *role["proton"]} - inorganic
     crossing -= set(role["oxygen"]) if case.oxygen == "anaerobic" else set()
-    if known & set(role["inorganic-carbon"]):
-        crossing -= set(role["inorganic-carbon"])
+    crossing |= set() if known & inorganic else set(role["carbon-dioxide"])
     for slug in sorted(crossing - known):
-        items.append(_Item(facts.compounds[slug].label, slug, "uptake", math.nan, 0.0, _content(facts, slug, 1)))
+        way, sign = ("release", -1) if slug in inorganic else ("uptake", 1)
+        items.append(_Item(facts.compounds[slug].label, slug, way, math.nan, 0.0, _content(facts, slug, sign)))
     state = "absent" if case.oxygen == "anaerobic" else "present"
     usual = {release.compound for release in net.host.releases if release.oxygen in ("", state)} | set(case.releases)
     for slug in sorted(usual - known - crossing):
