@@ -35,12 +35,14 @@ FiguresOption = Annotated[
 CertifyOption = Annotated[bool, typer.Option("--certify", help="Prove the answer in exact fractions.")]
 
 
-def asked(desk: Desk, scenario: Path, **wanted: dict[str, Any]) -> Scenario:
+def asked(desk: Desk, scenario: Path, **wanted: dict[str, Any]) -> Path | Scenario:
     """The scenario with the options that were given for each plugin, over those that it states itself."""
+    if not any(wanted.values()):
+        return scenario
     found = desk.scenario(scenario)
     stated = found.raw.get("plugin", {})
     given = {name: {**stated.get(name, {}), **options} for name, options in wanted.items() if options}
-    return msgspec.structs.replace(found, raw={**found.raw, "plugin": {**stated, **given}}) if given else found
+    return msgspec.structs.replace(found, raw={**found.raw, "plugin": {**stated, **given}})
 
 
 def wishes(
