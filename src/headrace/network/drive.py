@@ -69,7 +69,8 @@ class Lever:
 class Drive:
     """The energetics of one refill, whose row is `row`. force: the max-min driving force (kJ/mol).
 
-    force is None when no step has a known energy. worst: the row that limits it most. levers: largest gain first. conditions and ranges: what it was computed at.
+    force is None when no step has a known energy. worst: the row that limits it most. levers: largest gain first.
+    conditions and ranges: what it was computed at.
     """
 
     refill: str
