@@ -115,12 +115,14 @@ class _Maker:
         What is taken more from the membrane comes out as plain protons where the row works, so atoms and charge stay.
         """
         stated = self.case.energy.get("protons-per-atp")
+        if stated is None:
+            return terms
         motive, protons = self.facts.roles["motive-proton"], self.facts.roles["proton"]
         release = self.facts.reactions[self.facts.roles["energy-release"][0]]
         charged = {t.compound for t in release.terms if t.count < 0 and self.facts.compounds[t.compound].carrier}
         made = sum(count for (name, _), count in terms if name in charged)
         taken = -sum(count for (name, _), count in terms if name in motive)
-        if stated is None or made <= 0 or taken <= 0:
+        if made <= 0 or taken <= 0:
             return terms
         more = exactly(stated) * made - taken
         here = next((pool for pool, _ in terms if pool[0] in protons), (protons[0], row.place or row.inner))
@@ -247,6 +249,8 @@ def _rounded(entry: Mapping[int, Fraction]) -> dict[int, float]:
 
 
 def _limit(value: float) -> Fraction | None:
+    if value == 0.0:
+        return ZERO
     return None if math.isinf(value) else exactly(value)
 
 
