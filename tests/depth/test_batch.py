@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from headrace.solve import batch
@@ -35,6 +35,7 @@ def fresh(given_: Programme, cost: np.ndarray, points: batch.Points, k: int) -> 
     return session.minimise(cost).objective
 
 
+@settings(max_examples=30)
 @given(st.lists(st.lists(SMALL, min_size=5, max_size=5), min_size=2, max_size=3), st.integers(0, 10_000))
 def test_equals_fresh_solves(rows: list[list[int]], seed: int) -> None:
     rng = np.random.default_rng(seed)
@@ -77,6 +78,7 @@ def test_points_without_an_answer_are_said() -> None:
     assert found.optimal.tolist() == [True, False, True] and np.isnan(found.objective[1]) and np.isnan(found.read[1]).all()
 
 
+@settings(max_examples=30)
 @given(st.lists(st.lists(SMALL, min_size=6, max_size=6), min_size=3, max_size=3), st.integers(0, 10_000))
 def test_equals_fresh_solves_with_other_coefficients(rows: list[list[int]], seed: int) -> None:
     rng = np.random.default_rng(seed)

@@ -77,10 +77,11 @@ class Comparison:
             self.node(below, item, f"{where}[{number}].")
 
     def mapping(self, node: str, key: str, value: Mapping[str, Any], where: str) -> None:
-        """An object: a ledger is a part with fields, any other holds numbers by name."""
+        """An object: one with text or parts in it is a part with fields, as is a ledger; any other holds numbers by name."""
         kind = PARTS.get(key, OTHER).kind
-        if key == "ledger":
-            asked = f"SELECT ?n {{ GRAPH <{self.run}> {{ <{node}> hr:part ?n . ?n a <{kind}> }} }}"
+        if key == "ledger" or any(isinstance(each, str | Mapping | list) for each in value.values()):
+            table = "" if key in PARTS else f'; hr:table "{key}"'
+            asked = f"SELECT ?n {{ GRAPH <{self.run}> {{ <{node}> hr:part ?n . ?n a <{kind}> {table} }} }}"
             (row,) = self.ask(PREFIX + asked)
             self.node(row["n"]["value"], value, f"{where}.")
             return

@@ -121,13 +121,20 @@ class _Study:
         read, state = np.full((len(u), len(weights)), np.nan), np.full(len(u), 2, dtype=np.intp)
         shared = np.zeros(len(u), dtype=bool)
         left = np.arange(len(u))
+        told = 0
+
+        def tell(done: int) -> None:
+            nonlocal told
+            told = max(told, done)
+            step(told)
+
         for found, relaxed in dict.fromkeys(self._relaxations()):
             if len(left):
-                good, numbers = self._aimed(_relaxed(points, left, relaxed), weights, step, len(u) - len(left))
+                good, numbers = self._aimed(_relaxed(points, left, relaxed), weights, tell, len(u) - len(left))
                 read[left[good]], state[left[good]] = numbers[good], found
                 shared[left[good]] = set(self.shares).isdisjoint(relaxed)
                 left = left[~good]
-        step(len(u))
+        tell(len(u))
         rates = self._limit_rates(values)
         for k, outcome in enumerate(self.outcomes):
             if outcome.portion:

@@ -12,7 +12,7 @@ from typing import Any
 
 import msgspec
 
-from headrace.outputs.besidejson import beside
+from headrace.outputs.besidejson import PLAN_UNITS, beside
 from headrace.pages.notes import collected
 from headrace.values.answers import (
     AddedTable,
@@ -50,6 +50,8 @@ def document(result: Result, headrace: str, rates: bool = False) -> dict[str, An
         "grows": _grows,
     }
     found = build[result.kind](result, rates)
+    if result.plan is not None:
+        found["units"]["plan"] = dict(PLAN_UNITS)
     if result.tables:
         found["units"]["tables"] = {each.key: _table_units(each) for each in result.tables}
     return {

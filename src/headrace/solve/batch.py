@@ -128,7 +128,7 @@ class _Moved:
 
     base: (E) the programme's own coefficients; at: (E) the row of each, as a position among those rows; basic, out: which
     entries stand in basic columns and which do not, with where: (E) the position there; inverse: B^-1 U; price: c_B B^-1 U;
-    moves: all basic values per non-basic value, -B^-1 N; reduced: reduced costs with B; sides: see `_wrong`; same: non-basic
+    moves: rows of -B^-1 N, one per entry in a basic column; reduced: reduced costs with B; sides: see `_wrong`; same: non-basic
     variables that are fixed at every point.
     """
 
@@ -164,7 +164,7 @@ class _Moved:
         mixed[~known] = np.eye(size)
         found = start - np.linalg.solve(mixed, lead[..., None])[..., 0] @ self.inverse.T
         prices = np.linalg.solve(mixed.swapaxes(1, 2), np.broadcast_to(self.price, (number, size))[..., None])[..., 0]
-        reduced = self.reduced - (prices[:, self.at[inside]] * moved[:, inside]) @ self.moves[self.where[inside]]
+        reduced = self.reduced - (prices[:, self.at[inside]] * moved[:, inside]) @ self.moves
         for e in outside:
             reduced[:, self.where[e]] -= prices[:, self.at[e]] * moved[:, e]
         return found, known & ~(_wrong(reduced, self.sides) & ~self.same).any(axis=1)
@@ -263,23 +263,28 @@ def _vertex(programme: Programme, cost: Floats, basis: Basis, points: Points) ->
     wide = np.zeros((m, n + m))
     wide[programme.rows, np.repeat(np.arange(n), np.diff(programme.starts))] = programme.values
     wide[np.arange(m), n + np.arange(m)] = -1.0
-    rows = np.unique(np.array([row for row, _ in points.entries], dtype=np.intp))
-    right = np.hstack([wide[:, out], np.eye(m)[:, rows]])
-    try:
-        solved = np.asarray(np.linalg.solve(wide[:, basic], right), dtype=np.float64)
-    except np.linalg.LinAlgError:
-        return None
-    moves, inverse = -solved[:, : len(out)], solved[:, len(out) :]
-    same = lower == upper
-    same[points.varying] = (points.lower == points.upper).all(axis=0)
-    costs = np.concatenate([cost, np.zeros(m)])
-    reduced = costs[out] + costs[basic] @ moves
     bounded = np.isin(places[out], (LOWER, UPPER))
     sides = np.where(bounded, np.where(places[out] == UPPER, 1.0, -1.0), 0.0)
-    if not points.entries and (_wrong(reduced, sides) & ~same[out]).any():
-        return None
     varies = np.isin(out, points.varying) & bounded
     still = np.where(bounded & ~varies, np.where(places[out] == UPPER, upper[out], lower[out]), 0.0)
+    rows = np.unique(np.array([row for row, _ in points.entries], dtype=np.intp))
+    own = {int(variable): position for position, variable in enumerate(basic)}
+    inside = [own[column] for _, column in points.entries if column in own]
+    costs = np.concatenate([cost, np.zeros(m)])
+    right = np.column_stack([wide[:, out] @ still, wide[:, out[varies]], np.eye(m)[:, rows]])
+    left = np.column_stack([costs[basic], np.eye(m)[:, inside]])
+    try:  # only what is asked of the inverse: some of its columns times bounds, its prices, and a few of its rows
+        solved = np.asarray(np.linalg.solve(wide[:, basic], right), dtype=np.float64)
+        across = np.asarray(np.linalg.solve(wide[:, basic].T, left), dtype=np.float64)
+    except np.linalg.LinAlgError:
+        return None
+    count = int(varies.sum())
+    moves, inverse = -solved[:, 1 : 1 + count], solved[:, 1 + count :]
+    reduced = costs[out] - across[:, 0] @ wide[:, out]
+    same = lower == upper
+    same[points.varying] = (points.lower == points.upper).all(axis=0)
+    if not points.entries and (_wrong(reduced, sides) & ~same[out]).any():
+        return None
     resting = np.zeros(n)
     resting[out[out < n]] = still[out < n]
     order = {int(variable): position for position, variable in enumerate(points.varying)}
@@ -288,12 +293,12 @@ def _vertex(programme: Programme, cost: Floats, basis: Basis, points: Points) ->
     moved = None
     if points.entries:
         base = np.array([wide[row, column] for row, column in points.entries])
-        own = {int(variable): position for position, variable in enumerate(basic)}
         other = {int(variable): position for position, variable in enumerate(out)}
-        inside = np.array([column in own for _, column in points.entries])
+        flags = np.array([column in own for _, column in points.entries])
         where = np.array([own.get(column, other.get(column, 0)) for _, column in points.entries], dtype=np.intp)
         at = np.searchsorted(rows, [row for row, _ in points.entries])
-        moved = _Moved(base, at, inside, where, inverse, costs[basic] @ inverse, moves, reduced, sides, same[out])
-    return _Vertex(basic, moves @ still, moves[:, varies], np.array([order[int(v)] for v in out[varies]], dtype=np.intp),
+        led = -(across[:, 1:].T @ wide[:, out])
+        moved = _Moved(base, at, flags, where, inverse, costs[basic] @ inverse, led, reduced, sides, same[out])
+    return _Vertex(basic, -solved[:, 0], moves, np.array([order[int(v)] for v in out[varies]], dtype=np.intp),
                    np.flatnonzero(varies), still, places[out][varies] == UPPER, lower[basic], upper[basic],
                    (pairs[:, 0], pairs[:, 1]), resting, n, moved)
