@@ -1,9 +1,12 @@
 """Times of whole commands, as ratios to a yardstick of the same run, so that any machine can repeat them.
 
     python -m headrace.benchmark start SCENARIO [--runs N] [--at-most RATIO]
+    python -m headrace.benchmark serve RESULTS
 
 `start` compares `headrace refills SCENARIO`, with the facts already read once, with a Python that only imports three
 general libraries. Runs alternate; ratio = median over the runs of (command / yardstick of the same round).
+`serve` compares answers per second over HTTP with the bare engine on the same facts and results folder, for six queries,
+and prints the time from start to first answer.
 """
 
 from __future__ import annotations
@@ -14,8 +17,11 @@ import subprocess
 import sys
 import time
 from collections.abc import Sequence
+from pathlib import Path
 from statistics import median
 from typing import NamedTuple
+
+from headrace.outputs.service import bench
 
 YARDSTICK = "import rdflib, pandas, networkx"
 
@@ -62,13 +68,16 @@ def seconds(command: Sequence[str]) -> float:
 def main(arguments: Sequence[str] | None = None) -> int:
     """The command. 0: measured; 1: the ratio is above --at-most; 2: a process failed."""
     parser = argparse.ArgumentParser(prog="python -m headrace.benchmark", description="Times as ratios to a yardstick.")
-    parser.add_argument("what", choices=["start"], help="start: a whole refills command, facts already read once")
-    parser.add_argument("scenario", help="a scenario file")
+    parser.add_argument("what", choices=["start", "serve"], help="start: a whole refills command; serve: queries over HTTP")
+    parser.add_argument("scenario", help="start: a scenario file; serve: a results folder")
     parser.add_argument("--runs", type=int, default=7, help="rounds after one warm-up (default 7)")
     parser.add_argument("--at-most", type=float, help="exit 1 when the ratio is above this")
     given = parser.parse_args(arguments)
     if given.runs < 1:
         parser.error("--runs: at least 1")
+    if given.what == "serve":
+        print(bench.text(bench.measure(Path(given.scenario))), end="")
+        return 0
     try:
         timing = start(given.scenario, given.runs)
     except subprocess.CalledProcessError as error:

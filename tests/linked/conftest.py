@@ -38,6 +38,6 @@ def pool(results: Path) -> Iterator[Pool]:
 @pytest.fixture(scope="session")
 def client(results: Path) -> Iterator[Client]:
     """A service over facts and samples, with short limits."""
-    limits = Limits(seconds=1.0, result=5_000_000, request=2_000_000)
+    limits = Limits(seconds=1.0, result=2_000_000, request=2_000_000)
     with served(Plan(port=0, results=results, limits=limits, workers=2, memory=500_000_000)) as here:
         yield here

@@ -33,6 +33,7 @@ ServerPort = 127.0.0.1:{port}
 ServerThreads = 8
 [SPARQL]
 ResultSetMaxRows = {rows}
+MaxQueryExecutionTime = 30
 """
 
 

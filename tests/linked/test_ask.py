@@ -20,6 +20,8 @@ from headrace.outputs.service import openapi
 from .needs import program
 from .service import FORM, Client
 
+pytestmark = pytest.mark.xdist_group("linked")  # one worker shares what is started for these tests
+
 SCENARIO = """title = "asked over HTTP"
 host = "corynebacterium-glutamicum"
 growth = "0.1 /h"

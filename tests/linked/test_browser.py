@@ -12,6 +12,8 @@ import pytest
 from .needs import program
 from .service import Client
 
+pytestmark = pytest.mark.xdist_group("linked")  # one worker shares what is started for these tests
+
 FLAGS = (
     "--headless", "--no-sandbox", "--disable-gpu", "--disable-quic", "--no-first-run", "--disable-background-networking",
     "--disable-component-update", "--disable-sync", "--disable-dev-shm-usage", "--window-size=1200,900",

@@ -18,6 +18,8 @@ from headrace.run import Desk
 
 from .equal import Comparison
 
+pytestmark = pytest.mark.xdist_group("linked-files")  # one worker shares what is started for these tests
+
 ROOT = Path(__file__).resolve().parents[2]
 SCENARIOS = sorted((ROOT / "examples" / "scenarios").glob("*.toml"))
 QUERIES = sorted((ROOT / "examples" / "queries").glob("*.rq"))

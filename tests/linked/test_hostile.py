@@ -22,6 +22,8 @@ from headrace.outputs.service.site import Limits
 
 from .service import DIRECT, FORM, JSON, Answer, Client, served
 
+pytestmark = pytest.mark.xdist_group("linked")  # one worker shares what is started for these tests
+
 COUNT = "SELECT (COUNT(*) AS ?n) { ?s ?p ?o }"
 SECRET = "root:x:0:0"
 LIMIT = 1.0
@@ -93,7 +95,7 @@ def test_most_of_them_need_stopping(client: Client) -> None:
 
 def test_a_large_answer_is_an_error_and_never_cut(client: Client) -> None:
     for accept in (JSON, "text/csv", "application/sparql-results+xml"):
-        answer = client.query("SELECT * { ?s ?p ?o } ORDER BY ?s", accept)
+        answer = client.query("SELECT * { ?s ?p ?o }", accept)
         assert (answer.status, kind(answer)) == (500, "result-limit")
         assert len(answer.body) < 500
     assert kind(client.query("CONSTRUCT { ?s ?p ?o } WHERE { ?s ?p ?o }", "application/n-triples")) == "result-limit"

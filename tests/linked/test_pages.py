@@ -14,6 +14,8 @@ from headrace.outputs.service.pages.markup import Html, link, table, tag
 
 from .service import FORM, Client
 
+pytestmark = pytest.mark.xdist_group("linked")  # one worker shares what is started for these tests
+
 HTML = "text/html"
 BROWSER = "text/html,application/xhtml+xml,application/xml;q=0.9,*/*;q=0.8"
 ADDRESSES = [

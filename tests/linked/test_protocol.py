@@ -15,6 +15,8 @@ from pyoxigraph import RdfFormat, parse
 
 from .service import DIRECT, FORM, JSON, Client
 
+pytestmark = pytest.mark.xdist_group("linked")  # one worker shares what is started for these tests
+
 HOSTS = "SELECT ?h { ?h a <https://w3id.org/headrace/ns#Host> } ORDER BY ?h"
 GRAPH = "https://w3id.org/headrace/id/graph/"
 XML_RESULTS = "{http://www.w3.org/2005/sparql-results#}"

@@ -19,7 +19,10 @@ from headrace.values.facts import Facts
 from . import sample
 
 # rdflib 7 warns of its own inner calls on a dataset whose default graph is a union
-pytestmark = pytest.mark.filterwarnings("ignore:Dataset.default_context is deprecated:DeprecationWarning")
+pytestmark = [
+    pytest.mark.filterwarnings("ignore:Dataset.default_context is deprecated:DeprecationWarning"),
+    pytest.mark.xdist_group("linked-files"),  # one worker shares the service and its processes
+]
 
 HR = "https://w3id.org/headrace/ns#"
 SCENARIO = {

@@ -23,9 +23,12 @@ from headrace.outputs.query.dataset import Dataset
 from headrace.outputs.query.pool import Pool, Queries
 from headrace.outputs.query.work import QueryWork, syntax
 from headrace.outputs.rdf import folder, run
+from headrace.outputs.service import bench
 from headrace.values.facts import Facts
 
 from . import sample
+
+pytestmark = pytest.mark.xdist_group("linked-files")  # one worker shares what is started for these tests
 
 COUNT = "SELECT (COUNT(*) AS ?n) { ?s ?p ?o }"
 ENDLESS = "SELECT (COUNT(*) AS ?n) { ?a ?b ?c . ?d ?e ?f }"
@@ -209,3 +212,10 @@ def test_faults_of_the_command(tmp_path: Path) -> None:
 def test_the_list_of_queries(tmp_path: Path) -> None:
     said = command("--list", here=tmp_path).stdout
     assert all(name in said for name in named.every())
+
+
+def test_the_benchmark_measures_six_queries(results: Path) -> None:
+    report = bench.measure(results, seconds=0.05)
+    assert len(report.rates) == 6 and report.first > 0
+    assert all(rate.http > 0 and rate.engine > 0 for rate in report.rates)
+    assert bench.text(report).count("\n") == 9

@@ -19,6 +19,8 @@ from headrace.values.facts import Facts
 
 from . import freeze, sample
 
+pytestmark = pytest.mark.xdist_group("linked-files")  # one worker shares what is started for these tests
+
 KILLS = 200
 
 

@@ -27,13 +27,15 @@ _FOREIGN = ("bif", "sql")  # engine extensions that reach outside of the data
 
 class Query(Struct, frozen=True):
     """A query that may run. form: select, construct, describe, ask. default, named: the graphs of its FROM and FROM NAMED
-    clauses; both None without any. undeclared: usual prefixes that it uses without declaring them."""
+    clauses; both None without any. undeclared: usual prefixes that it uses without declaring them. names_graphs: whether
+    it has a GRAPH pattern."""
 
     text: str
     form: str
     default: tuple[str, ...] | None = None
     named: tuple[str, ...] | None = None
     undeclared: tuple[str, ...] = ()
+    names_graphs: bool = False
 
     def standalone(self) -> str:
         """The text with all its prefixes declared, for an engine that knows none. (On the first line, so that the lines
@@ -51,7 +53,8 @@ def check(text: str) -> Query:
     form = _form(plain, found, start)
     _words(plain, found[start:])
     default, named = _dataset(plain, found[start:], prefixes, base)
-    return Query(plain, form, default, named, _undeclared(plain, found, prefixes))
+    names_graphs = any(token.kind == "word" and token.text.lower() == "graph" for token in found[start:])
+    return Query(plain, form, default, named, _undeclared(plain, found, prefixes), names_graphs)
 
 
 def _refuse(text: str, token: Token, what: str, accepted: str = "", hint: str = "") -> InputError:

@@ -86,7 +86,8 @@ class Store:
         if default is None and named is None:
             default, named = query.default, query.named
         if default is None and named is None:
-            default = named = self.graphs()
+            default = self.graphs()
+            named = default if query.names_graphs else ()  # a list that is not needed costs some engines seconds
         for iri in (*(default or ()), *(named or ())):
             guard.local_graph(iri)
         accept = results.SOLUTIONS if query.form in ("select", "ask") else results.GRAPH
