@@ -77,7 +77,7 @@ def recompute(answer: dict, case, book: RouteBook, contents: dict[str, Fraction]
 
 
 def test_random_cases_close(desk, capsys):
-    contents = {r["compound"]: Fraction(r["skeletons"]) for r in csv.DictReader(CONTENTS.open())}
+    contents = {r["compound"]: Fraction(r["skeletons"]) for r in csv.DictReader(CONTENTS.read_text("utf-8").splitlines())}
     rng = random.Random(20261201)
     done = tried = 0
     seen = {"removed": 0, "released": 0, "supplied": 0, "reversed": 0, "carried": 0}
