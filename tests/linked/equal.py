@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 from collections import defaultdict
 from collections.abc import Callable, Mapping
 from typing import Any
@@ -25,6 +26,9 @@ def python(term: Mapping[str, str]) -> Any:
         number = float(term["value"].replace("INF", "inf"))
         return "unbounded" if math.isinf(number) else number
     return term["value"] == "true" if kind == "boolean" else term["value"]
+
+
+EXACT = re.compile(r"-?\d+(/\d+)?")
 
 
 class Comparison:
@@ -79,7 +83,7 @@ class Comparison:
     def mapping(self, node: str, key: str, value: Mapping[str, Any], where: str) -> None:
         """An object: one with text or parts in it is a part with fields, as is a ledger; any other holds numbers by name."""
         kind = PARTS.get(key, OTHER).kind
-        if key == "ledger" or any(isinstance(each, str | Mapping | list) for each in value.values()):
+        if key == "ledger" or any(_telling(each) for each in value.values()):
             table = "" if key in PARTS else f'; hr:table "{key}"'
             asked = f"SELECT ?n {{ GRAPH <{self.run}> {{ <{node}> hr:part ?n . ?n a <{kind}> {table} }} }}"
             (row,) = self.ask(PREFIX + asked)
@@ -91,6 +95,11 @@ class Comparison:
         self.compared += len(value)
         if found != {name: plain_number(each) for name, each in value.items()}:
             self.differences.append(f"{where}: JSON has {value}, RDF has {found}")
+
+
+def _telling(value: Any) -> bool:
+    """Whether a value is a part or a text; an exact number ("3/2") is neither."""
+    return isinstance(value, Mapping | list) or isinstance(value, str) and not EXACT.fullmatch(value)
 
 
 def plain_number(value: Any) -> Any:
